@@ -12,7 +12,7 @@ from typing import Protocol
 from surefoot.equation.results import Real
 
 
-class OperationFailed(Exception):  # noqa: N818 - a value in exception's clothes, caught where the subexpression is known
+class OperationFailed(Exception):  # a value in exception's clothes, caught where the subexpression is known
     """Raised by an operation that has no finite result; `kind` is a `FailureKind`."""
 
     def __init__(self, kind: str) -> None:

@@ -69,7 +69,7 @@ _WORDS = {
 }
 
 
-class EvaluationFailed(Exception):  # noqa: N818 - not an error: it carries a result past the step rule
+class EvaluationFailed(Exception):  # not an error: it carries a result past the step rule
     """Carries a Failure or Stopped through a step rule to the stepper, which turns it into a value again."""
 
     def __init__(self, result: Failure | Stopped) -> None:

@@ -17,7 +17,7 @@ T = TypeVar("T")
 
 @dataclass(frozen=True, slots=True)
 class Chain(Generic[T]):
-    """A list that grows at its end in constant time and shares all that came before: a step costs the same at any length.
+    """A list that grows at its end in constant time and shares all that came before.
 
     `length` counts the items; `last` is None only in the empty chain.
     """
