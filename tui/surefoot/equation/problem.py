@@ -9,7 +9,7 @@ from dataclasses import dataclass, field
 class Input:
     """A named value of the problem.
 
-    `value` is the literal as typed (`0.025`, `0x1.a36e2eb1c432dp-11`); the other texts are literals too, None if absent.
+    `value` is the literal as typed (`0.025`, `0x1.a36e2eb1c432dp-11`); other texts are literals too, None if absent.
     """
 
     name: str
