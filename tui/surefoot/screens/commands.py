@@ -1,0 +1,127 @@
+"""The one table of keys. Bindings, key lines, the page of keys and the guide are made from it.
+
+`ROOMS` are the screens one moves between; a key belongs to one of them, to `everywhere`, or to a text `field`. A key with
+a `needs` is offered only when the session's state allows that command; elsewhere it is shown in parentheses and, when
+pressed, says why not.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from dataclasses import dataclass
+
+from textual.binding import Binding, BindingType
+
+from surefoot.session import commands as asked
+
+
+@dataclass(frozen=True, slots=True)
+class Key:
+    """One key of one place.
+
+    Attributes:
+        action: name of the handler, `action_<action>`.
+        keys: what may be pressed, in the toolkit's names; the first is the one shown.
+        shown: how the key is written in the key line.
+        label: what it does, in one to three words.
+        meaning: what it does, in a sentence, for the page of keys.
+        needs: the command that the session must allow, None when it is always allowed.
+        line: whether it is in the key line; what is not is on the page of keys.
+    """
+
+    action: str
+    keys: tuple[str, ...]
+    shown: str
+    label: str
+    meaning: str
+    needs: type | None = None
+    line: bool = True
+
+
+ROOMS: tuple[str, ...] = ("function", "method", "steps", "record")
+
+EVERYWHERE: tuple[Key, ...] = (
+    Key("go_function", ("1", "alt+1"), "1", "function", "Go to the function: equation, definitions, inputs.", line=False),
+    Key("go_method", ("2", "alt+2"), "2", "method", "Go to the method: plan, starts, limits, stopping test.", line=False),
+    Key("go_steps", ("3", "alt+3"), "3", "steps", "Go to the steps of the run in hand.", line=False),
+    Key("go_record", ("4", "alt+4"), "4", "record", "Go to the record: events, recomputing.", line=False),
+    Key("leave", ("ctrl+q",), "ctrl+q", "leave", "Leave the program; all that was done is on disk.", line=False),
+    Key("opening", ("w",), "w", "sessions", "Put this session away and show the sessions found.", line=False),
+    Key("note", ("n",), "n", "note", "Write a note into the record.", asked.AddNote, line=False),
+    Key("keys", ("question_mark", "f1"), "?", "keys", "Show this page."),
+)
+
+FIELD: tuple[Key, ...] = (
+    Key("out_of_field", ("escape",), "esc", "keys of the page", "Leave the field, so that single keys act again."),
+    Key("accept", ("ctrl+s",), "ctrl+s", "accept", "Accept what is typed."),
+    Key("editor", ("ctrl+o",), "ctrl+o", "own editor", "Edit in $VISUAL or $EDITOR and come back."),
+)
+
+PLACES: Mapping[str, tuple[Key, ...]] = {
+    "opening": (
+        Key("resume", ("enter",), "enter", "resume", "Resume the session under the cursor."),
+        Key("new", ("n",), "n", "new", "Begin a new session."),
+        Key("open", ("o",), "o", "open a file", "Open a session (.json) or a problem file (.toml)."),
+        Key("filter", ("slash",), "/", "filter", "Show only the sessions whose title or state has these letters."),
+        Key("leave", ("q", "ctrl+q"), "q", "leave", "Leave the program."),
+        Key("keys", ("question_mark", "f1"), "?", "keys", "Show this page."),
+    ),
+    "function": (
+        Key("accept", ("a", "ctrl+s"), "a", "accept", "Accept the problem as it stands.", asked.StateProblem),
+        Key("edit", ("enter", "i"), "enter", "type", "Go into the field that was last in hand.", asked.StateProblem),
+        Key("open", ("o",), "o", "open a file", "Take the problem from a problem file (.toml).", asked.StateProblem),
+        Key("paste", ("p",), "p", "paste source", "Paste Fortran, C or Python lines.", asked.StateProblem),
+        Key("editor", ("e", "ctrl+o"), "e", "own editor", "Edit the problem file text in $VISUAL or $EDITOR."),
+        Key("withdraw", ("backspace",), "backspace", "withdraw", "Take back what was done last.", asked.Withdraw),
+    ),
+    "method": (
+        Key("begin", ("b", "ctrl+s"), "b", "begin the run", "Evaluate the starts and begin a run.", asked.BeginRun),
+        Key("change", ("enter",), "enter", "change", "Choose the method, or change the value under the cursor."),
+        Key("clear", ("delete", "x"), "x", "clear", "Put the value under the cursor back to its default."),
+        Key("pick_start", ("s",), "s", "start on f", "Choose a start on the picture of f."),
+        Key("zoom", ("z",), "z", "zoom", "Show f over the working range or around the starts."),
+        Key("withdraw", ("backspace",), "backspace", "withdraw", "Take back what was done last.", asked.Withdraw),
+    ),
+    "steps": (
+        Key("step", ("space",), "space", "step", "Take one step.", asked.TakeSteps),
+        Key("withdraw", ("backspace",), "backspace", "withdraw", "Take back what was done last.", asked.Withdraw),
+        Key("to_the_stop", ("end", "g"), "end", "to the stop", "Go on until the run ends; any key stops it."),
+        Key("several", ("m",), "m", "more steps", "Take a number of steps.", asked.TakeSteps, line=False),
+        Key("trial", ("t",), "t", "trial steps", "Where each method would land from here; takes no step."),
+        Key("picture", ("c",), "c", "convergence", "Change the picture: f with the step, or convergence.", line=False),
+        Key("zoom", ("z",), "z", "zoom", "Show f over the working range or around the iterates.", line=False),
+        Key("put", ("p",), "p", "put x", "Go on from an x of your own; a reason is asked.", asked.PutIterate, line=False),
+        Key("variant", ("v",), "v", "variant", "Begin a run from this iterate under a changed plan.", line=False),
+        Key("other_run", ("r",), "r", "other run", "Take up the next run.", asked.TakeUp, line=False),
+        Key("abandon", ("d",), "d", "abandon", "End the run without a verdict.", asked.Abandon, line=False),
+        Key("earlier", ("up",), "up", "earlier", "Look at the step before.", line=False),
+        Key("later", ("down",), "down", "later", "Look at the step after.", line=False),
+    ),
+    "record": (
+        Key("recompute", ("r",), "r", "recompute", "Do every step again and compare the bits."),
+        Key("earlier", ("up",), "up", "earlier", "Go up.", line=False),
+        Key("later", ("down",), "down", "later", "Go down.", line=False),
+        Key("withdraw", ("backspace",), "backspace", "withdraw", "Take back what was done last.", asked.Withdraw),
+    ),
+}
+
+
+def bindings_of(place: str) -> list[BindingType]:
+    """The toolkit's bindings of a place: every key goes through `action_press`, the one gate."""
+    return [
+        Binding(",".join(key.keys), f"press('{key.action}')", key.label, show=False, id=f"{place}.{key.action}")
+        for key in keys_of(place)
+    ]
+
+
+def key_of(place: str, action: str) -> Key:
+    """The key of a place that has this action. Raises KeyError when there is none."""
+    for key in keys_of(place):
+        if key.action == action:
+            return key
+    raise KeyError(action)
+
+
+def keys_of(place: str) -> tuple[Key, ...]:
+    """All keys that act in a place, its own first."""
+    return PLACES[place] + (EVERYWHERE if place in ROOMS else ())
