@@ -28,7 +28,10 @@ class Operations(Protocol):
 
     @property
     def functions(self) -> Mapping[str, Callable[..., Real]]:
-        """Name in the equation language -> implementation; a missing name is `unavailable`."""
+        """Name in the equation language -> implementation; a missing name is `unavailable`.
+
+        A constant (`pi`) is a function without arguments; `min` and `max` take two or more.
+        """
 
     def literal(self, text: str, single: bool) -> Real:
         """The number nearest to a literal: of the arithmetic, or of binary32 first when `single`."""
