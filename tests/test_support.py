@@ -7,6 +7,7 @@ import sys
 from pathlib import Path
 
 import pytest
+
 from support.command import Home
 from support.terminal import Terminal
 
