@@ -3,12 +3,13 @@
 from __future__ import annotations
 
 from collections.abc import Iterator
-from dataclasses import dataclass
+from dataclasses import dataclass, field
 from typing import Generic, Literal, TypeAlias, TypeVar
 
 from surefoot.equation.problem import Derivative, Problem
 from surefoot.methods.contract import Ending, Iterate, Progress, Spent, State
 from surefoot.methods.plan import Plan
+from surefoot.session.environment import Environment
 
 Phase: TypeAlias = Literal["posing", "planning", "stepping", "ended", "assessed", "signed"]
 
@@ -24,7 +25,7 @@ class Chain(Generic[T]):
 
     length: int = 0
     last: T | None = None
-    before: Chain[T] | None = None
+    before: Chain[T] | None = field(default=None, repr=False)
 
     def append(self, item: T) -> Chain[T]:
         return Chain(self.length + 1, item, self)
@@ -76,6 +77,7 @@ class Run:
         spent: evaluations made for steps.
         ending: None while it is stepping.
         parent: (run, k) for a variant, None otherwise.
+        readings: plain sentences on what the plan left open and how it was read.
     """
 
     number: int
@@ -88,6 +90,7 @@ class Run:
     spent: Spent
     ending: Ending | None
     parent: tuple[int, int] | None = None
+    readings: tuple[str, ...] = ()
 
     @property
     def current(self) -> Iterate:
@@ -122,11 +125,14 @@ class SessionState:
         problems: all problems that were stated and not withdrawn; the last is the one in force.
         runs: all runs that were not withdrawn, in order of their number.
         hand: number of the run in hand, None before there is one.
-        before: the state that withdrawing would return to, None when there is nothing to withdraw.
+        before: the state that withdrawing would return to, None when there is nothing to withdraw. Its `events` is the
+            number of the event that would be withdrawn.
         undo: what withdrawing would take back, in words ("step 6"); empty when there is nothing.
         events: number of events folded.
         changed_at: time of the last event (UTC, ISO 8601).
         by: who last sat at the session.
+        run_numbers, problem_numbers: numbers given out so far, to withdrawn ones too.
+        environment: what the last sitting computed in, None before event 0.
     """
 
     phase: Phase = "posing"
@@ -135,11 +141,14 @@ class SessionState:
     runs: tuple[Run, ...] = ()
     hand: int | None = None
     notes: tuple[Note, ...] = ()
-    before: SessionState | None = None
+    before: SessionState | None = field(default=None, compare=False, repr=False)  # as deep as the record is long
     undo: str = ""
     events: int = 0
     changed_at: str = ""
     by: str = ""
+    run_numbers: int = 0
+    problem_numbers: int = 0
+    environment: Environment | None = None
 
     @property
     def stated(self) -> StatedProblem | None:

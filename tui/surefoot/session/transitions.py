@@ -1,0 +1,109 @@
+"""Which command is allowed in which phase, and why not where it is not: the one table of transitions."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+from typing import TypeAlias
+
+from surefoot.errors import Refused
+from surefoot.session.commands import (
+    Abandon,
+    AddNote,
+    BeginRun,
+    BeginVariant,
+    Command,
+    PutIterate,
+    StateProblem,
+    TakeSteps,
+    TakeUp,
+    Withdraw,
+)
+from surefoot.session.state import Phase, SessionState
+
+_No: TypeAlias = tuple[str, str]  # reason, hint
+
+_NO_PROBLEM: _No = ("no problem yet", "state the equation first")
+_NO_PLAN: _No = ("no plan yet", "choose a method and its starts first")
+_NO_RUN: _No = ("no run yet", "begin one first")
+_UNDER_WAY: _No = ("the run in hand is under way", "go on to its stop, abandon it or withdraw it first")
+_ENDED: _No = ("the run in hand has ended", "withdraw its last step, begin a variant or plan a new run")
+_ASSESSED: _No = ("the root is assessed", "withdraw the assessment first, or plan a new run")
+_SIGNED: _No = ("the session is signed and closed", "go on in a new session that names this one")
+
+# None: allowed, as far as the phase decides; `refusal` adds what depends on the runs and on what can be withdrawn.
+TABLE: Mapping[Phase, Mapping[type[Command], _No | None]] = {
+    "posing": {
+        StateProblem: None,
+        BeginRun: _NO_PROBLEM,
+        TakeSteps: _NO_PROBLEM,
+        PutIterate: _NO_PROBLEM,
+        BeginVariant: _NO_PROBLEM,
+        TakeUp: _NO_PROBLEM,
+        Abandon: _NO_PROBLEM,
+        Withdraw: None,
+        AddNote: None,
+    },
+    "planning": {
+        StateProblem: None,
+        BeginRun: None,
+        TakeSteps: _NO_PLAN,
+        PutIterate: _NO_PLAN,
+        BeginVariant: None,
+        TakeUp: None,
+        Abandon: _NO_PLAN,
+        Withdraw: None,
+        AddNote: None,
+    },
+    "stepping": {
+        StateProblem: _UNDER_WAY,
+        BeginRun: _UNDER_WAY,
+        TakeSteps: None,
+        PutIterate: None,
+        BeginVariant: None,
+        TakeUp: None,
+        Abandon: None,
+        Withdraw: None,
+        AddNote: None,
+    },
+    "ended": {
+        StateProblem: None,
+        BeginRun: None,
+        TakeSteps: _ENDED,
+        PutIterate: _ENDED,
+        BeginVariant: None,
+        TakeUp: None,
+        Abandon: _ENDED,
+        Withdraw: None,
+        AddNote: None,
+    },
+    "assessed": {
+        StateProblem: None,
+        BeginRun: None,
+        TakeSteps: _ASSESSED,
+        PutIterate: _ASSESSED,
+        BeginVariant: None,
+        TakeUp: None,
+        Abandon: _ASSESSED,
+        Withdraw: None,
+        AddNote: None,
+    },
+    "signed": dict.fromkeys(
+        (StateProblem, BeginRun, TakeSteps, PutIterate, BeginVariant, TakeUp, Abandon, Withdraw, AddNote), _SIGNED
+    ),
+}
+
+
+def refusal(state: SessionState, command: type[Command]) -> Refused | None:
+    """Why a command is not allowed in this state, None when it is."""
+    no = TABLE[state.phase][command] or _beside_the_phase(state, command)
+    return Refused(*no) if no else None
+
+
+def _beside_the_phase(state: SessionState, command: type[Command]) -> _No | None:
+    if command is Withdraw and state.before is None:
+        return "nothing to withdraw", ""
+    if command is BeginVariant and not state.runs:
+        return _NO_RUN
+    if command is TakeUp and not any(run.number != state.hand for run in state.runs):
+        return "there is no other run", "begin a new run or a variant first"
+    return None
