@@ -1,4 +1,4 @@
-"""The time of an event."""
+"""The times of the record."""
 
 from __future__ import annotations
 
@@ -7,4 +7,9 @@ from datetime import UTC, datetime
 
 def utc_now() -> str:
     """Now, in UTC, to the millisecond: `2026-12-01T14:02:11.318Z`."""
-    return datetime.now(UTC).strftime("%Y-%m-%dT%H:%M:%S.%f")[:-3] + "Z"
+    return time_of(datetime.now(UTC))
+
+
+def time_of(moment: datetime) -> str:
+    """A moment as the record writes it. Naive times are taken for UTC."""
+    return moment.strftime("%Y-%m-%dT%H:%M:%S.%f")[:-3] + "Z"
