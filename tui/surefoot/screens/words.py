@@ -4,6 +4,8 @@ from __future__ import annotations
 
 from datetime import datetime
 
+from surefoot.equation.choice import arithmetic_of
+from surefoot.equation.results import Real
 from surefoot.methods.contract import Outcome
 from surefoot.session.state import Run, SessionState
 
@@ -48,3 +50,8 @@ def run_words(state: SessionState) -> str:
 def ending_words(run: Run) -> str:
     """The outcome of a run in a word or two, `stepping` before it has one."""
     return OUTCOME_WORDS[run.ending.outcome] if run.ending is not None else "stepping"
+
+
+def record_text(run: Run, number: Real) -> str:
+    """A number of a run as record text: every digit it has, in any arithmetic."""
+    return arithmetic_of(run.plan.arithmetic).encode(number)

@@ -1,0 +1,83 @@
+"""A step in words: what it took for true, where it landed, and what deviates from the plain rule."""
+
+from __future__ import annotations
+
+from surefoot.equation.choice import arithmetic_of
+from surefoot.equation.results import Failure
+from surefoot.figures.numbers import short, significant, with_unit
+from surefoot.methods.contract import Account, Iterate, Limited
+from surefoot.session.state import Run
+
+_STAGES = {
+    "damping": "damped",
+    "step_limit": "held by step_limit",
+    "relative_step_limit": "held by relative_step_limit",
+    "factor_limit": "held by factor_limit",
+    "first_step_limit": "held by first_step_limit",
+    "edge_fraction": "held short of the bound",
+    "bounds": "stopped at the bound",
+}
+
+
+def account_words(run: Run, iterate: Iterate, previous: Iterate | None, order: float | None) -> str:
+    """One or two sentences on how this iterate came about."""
+    words = _Words(run)
+    if iterate.put:
+        return f"Put by hand: {words.x(iterate.x)}. Reason: {iterate.put}"
+    if iterate.account is None:
+        return f"Start {iterate.k}: {words.x(iterate.x)}, {words.residual(iterate)}."
+    parts = [f"Step to {iterate.k}: {words.basis(iterate.account)}"]
+    if previous is not None:
+        parts.append(f"d{words.name} = {words.amount(iterate.x - previous.x)}")
+    text = ", ".join(parts) + "."
+    for limited in iterate.limited:
+        text += " " + words.limit(limited)
+    if isinstance(iterate.f, Failure):
+        return f"{text} f has no value there: {iterate.f}."
+    return text if order is None else f"{text} Order {order:.1f}."
+
+
+class _Words:
+    """Numbers of one run as short text with its unit."""
+
+    def __init__(self, run: Run) -> None:
+        problem = run.stated.problem
+        self.name, self.unit = problem.unknown, problem.unit
+        self._arithmetic = arithmetic_of(run.plan.arithmetic)
+
+    def number(self, x: float, digits: int) -> str:
+        return significant(self._arithmetic.encode(x), digits)
+
+    def amount(self, x: float) -> str:
+        return with_unit(short(self._arithmetic.encode(x)), self.unit)
+
+    def x(self, x: float) -> str:
+        return f"{self.name} = {with_unit(self.number(x, 9), self.unit)}"
+
+    def residual(self, iterate: Iterate) -> str:
+        if isinstance(iterate.f, Failure):
+            return f"f has no value: {iterate.f}"
+        return f"f = {short(self._arithmetic.encode(iterate.f))}"
+
+    def basis(self, account: Account) -> str:
+        at = [self.number(point.x, 8) for point in account.points]
+        figures = {name: self.number(value, 3) for name, value in account.figures}
+        if account.shape == "tangent":
+            slope = self.number(account.slope, 4) if account.slope is not None else "?"
+            age = f", held for {figures['age']} steps" if figures.get("age", "0") not in ("0", "") else ""
+            step = f", difference step {figures['h']}" if "h" in figures else ""
+            return f"tangent at {self.name} = {at[0]}, df/d{self.name} = {slope}{age}{step}"
+        if account.shape == "chord":
+            slope = self.number(account.slope, 4) if account.slope is not None else "?"
+            step = f", difference step {figures['h']}" if "h" in figures else ""
+            return f"chord through {self.name} = {' and '.join(at)}, slope {slope}{step}"
+        if account.shape == "bracket":
+            width = f", width {figures['width']}" if "width" in figures else ""
+            return f"middle of {' .. '.join(at)}{width}"
+        if account.shape == "cobweb":
+            return f"{self.name} = g({at[0]})"
+        return f"parabola through {', '.join(at)}"
+
+    def limit(self, limited: Limited) -> str:
+        how = _STAGES.get(limited.stage, limited.stage)
+        return f"The rule wanted {self.number(limited.before, 6)}; {how} to {self.number(limited.after, 6)}."

@@ -1,0 +1,257 @@
+"""The method room: which method, its traits, and every key of the plan; a picture of f to choose a start on."""
+
+from __future__ import annotations
+
+from typing import ClassVar
+
+from rich.text import Text
+from textual.app import ComposeResult
+from textual.binding import Binding, BindingType
+from textual.containers import Horizontal, Vertical
+
+from surefoot.errors import PlanError
+from surefoot.methods.contract import Traits
+from surefoot.methods.table import METHODS
+from surefoot.screens.commands import bindings_of
+from surefoot.screens.dialogs import Ask, Choose
+from surefoot.screens.pictures import Sampler, start_picture
+from surefoot.screens.plan_form import PlanForm, PlanRow, form_of_plan, form_of_table
+from surefoot.screens.room import Room
+from surefoot.screens.widgets.lines import Lines
+from surefoot.session.commands import BeginRun, BeginVariant
+
+_LIST_ROWS = 7
+
+
+class MethodRoom(Room):
+    """Methods on the left above the plan; on the right f over the range above what the cursor's row means."""
+
+    place = "method"
+    BINDINGS: ClassVar[list[BindingType]] = [
+        *bindings_of("method"),
+        Binding("up", "move(-1)", show=False),
+        Binding("down", "move(1)", show=False),
+        Binding("pageup", "move(-8)", show=False),
+        Binding("pagedown", "move(8)", show=False),
+        Binding("left,right", "slide", show=False),
+        Binding("tab", "other_list", show=False),
+    ]
+
+    def __init__(self) -> None:
+        super().__init__()
+        self.form = PlanForm("newton-raphson")
+        self.in_methods = True
+        self.at = 0
+        self.zoomed = False
+        self.started = False
+
+    def compose_body(self) -> ComposeResult:
+        with Horizontal():
+            with Vertical(id="plan-side"):
+                yield Lines(id="methods")
+                yield Lines(id="plan")
+            with Vertical(id="picture-side"):
+                yield Lines(id="start-picture")
+                yield Lines(id="meaning")
+
+    def on_screen_resume(self) -> None:
+        if not self.started and self.state is not None:
+            self.started = True
+            self._take_plan()
+        self.redraw()
+
+    def _take_plan(self) -> None:
+        """Begin from the plan of the run in hand, else from that of the problem file, else from defaults."""
+        state = self.state
+        if state is not None and state.run is not None:
+            self.form = form_of_plan(state.run.plan)
+        elif self.surefoot.plan_table is not None:
+            try:
+                self.form = form_of_table(self.surefoot.plan_table, self.surefoot.arithmetic)
+            except PlanError as error:
+                self.say(str(error), "alert")
+        else:
+            self.form = PlanForm("newton-raphson", {"stop.x_relative": "1e-10"})
+        self.at = list(METHODS).index(self.form.method)
+
+    # -- drawing ----------------------------------------------------------------------------------------------------
+
+    def context(self) -> tuple[str, str]:
+        variant = self.surefoot.variant
+        if variant is not None:
+            run, k = variant
+            return f"variant of run {run} from iterate {k}: its starts are taken from there", ""
+        return "plan of the next run", ""
+
+    def draw(self) -> None:
+        methods = self.query_one("#methods", Lines)
+        methods.styles.height = min(len(METHODS) + 2, _LIST_ROWS)
+        methods.show(self._method_lines(methods.size.width))
+        plan = self.query_one("#plan", Lines)
+        plan.show(self._plan_lines(plan.size.width, plan.size.height))
+        meaning = self.query_one("#meaning", Lines)
+        lines = self._meaning_lines(max(meaning.size.width - 1, 10))
+        meaning.styles.height = 6
+        meaning.show(lines)
+        self._draw_picture()
+
+    def _method_lines(self, width: int) -> list[Text]:
+        head = self.styled(f" {'method':<24}{'starts':>6}{'order':>7}{'calls':>6}", "quiet")
+        rows = _LIST_ROWS - 2
+        codes = list(METHODS)
+        here = self.at if self.in_methods else codes.index(self.form.method)
+        first = max(0, min(here - rows // 2, len(codes) - rows))
+        lines = [head]
+        for index in range(first, min(first + rows, len(codes))):
+            traits = METHODS[codes[index]].traits
+            mark = ">" if codes[index] == self.form.method else " "
+            text = f"{mark}{traits.code:<24}{traits.starts:>6}{_order(traits):>7}{sum(traits.evaluations):>6}"
+            under_cursor = self.in_methods and index == self.at
+            lines.append(self.styled(text[:width], "here") if under_cursor else Text(text[:width]))
+        lines.append(self.styled(self.surefoot.rule(max(width - 1, 0)), "quiet"))
+        return lines
+
+    def _plan_lines(self, width: int, height: int) -> list[Text]:
+        rows = self.form.rows()
+        at = -1 if self.in_methods else self.at
+        first = max(0, min(at - height // 2, len(rows) - height))
+        lines = []
+        for index in range(first, min(first + max(height, 1), len(rows))):
+            row = rows[index]
+            value = row.value or (f"({row.default})" if row.default else "-")
+            if row.key.startswith("start ") and self.surefoot.variant is not None:
+                value = "(from the iterate)"
+            text = f"{'*' if row.value else ' '}{row.key:<24} {value}"[: max(width - 1, 0)]
+            lines.append(self.styled(text.ljust(width - 1), "here") if index == at else Text(text))
+        return lines
+
+    def _meaning_lines(self, width: int) -> list[Text]:
+        if self.in_methods:
+            traits = METHODS[list(METHODS)[self.at]].traits
+            return [Text(line) for line in (*_wrapped(traits.idea, width, 3), *_wrapped(traits.source, width, 2))]
+        row = self.form.rows()[self.at]
+        lines = _wrapped(row.meaning, width, 3)
+        if row.choices:
+            lines += _wrapped("one of: " + ", ".join(row.choices), width, 2)
+        if row.default:
+            lines.append(f"default: {row.default}")
+        return [Text(line) for line in lines[:6]]
+
+    def _draw_picture(self) -> None:
+        view = self.query_one("#start-picture", Lines)
+        state = self.state
+        if state is None or state.stated is None:
+            view.show([])
+            return
+        sampler = self.surefoot.sampler(state.stated)
+        starts = [value for row, value in self._starts() if value is not None]
+        view.show(start_picture(sampler, starts, self.zoomed, view.size.width, view.size.height, self.characters))
+
+    def _starts(self) -> list[tuple[PlanRow, float | None]]:
+        rows = [row for row in self.form.rows() if row.key.startswith("start ")]
+        return [(row, _number(row.value)) for row in rows]
+
+    # -- keys -------------------------------------------------------------------------------------------------------
+
+    def action_other_list(self) -> None:
+        self.in_methods = not self.in_methods
+        self.at = list(METHODS).index(self.form.method) if self.in_methods else 0
+        self.redraw()
+
+    def action_move(self, by: int) -> None:
+        last = len(METHODS) - 1 if self.in_methods else len(self.form.rows()) - 1
+        self.at = max(0, min(self.at + by, last))
+        self.message = ""
+        self.redraw()
+
+    def action_slide(self) -> None:
+        self.action_other_list()
+
+    def do_change(self) -> None:
+        if self.in_methods:
+            self.form = self.form.with_method(list(METHODS)[self.at])
+            self.action_other_list()
+            return
+        row = self.form.rows()[self.at]
+
+        def chosen(index: int | None) -> None:
+            if index is not None:
+                self._set(row.key, row.choices[index])
+
+        def typed(text: str | None) -> None:
+            if text is not None:
+                self._set(row.key, text)
+
+        if row.choices:
+            now = row.value or row.default
+            at = row.choices.index(now) if now in row.choices else 0
+            self.app.push_screen(Choose(f"{row.key}: {row.meaning}", row.choices, at=at), chosen)
+        else:
+            self.app.push_screen(Ask(f"{row.key}: {row.meaning}", value=row.value), typed)
+
+    def _set(self, key: str, text: str) -> None:
+        self.form = self.form.with_value(key, text)
+        self.redraw()
+
+    def do_clear(self) -> None:
+        if not self.in_methods:
+            self._set(self.form.rows()[self.at].key, "")
+
+    def do_zoom(self) -> None:
+        self.zoomed = not self.zoomed
+
+    def do_pick_start(self) -> None:
+        """Ask for the starts one after the other, with the picture in sight."""
+        rows = [row for row in self.form.rows() if row.key.startswith("start ")]
+        self._ask_start(rows, 0)
+
+    def _ask_start(self, rows: list[PlanRow], index: int) -> None:
+        if index >= len(rows):
+            return
+        row = rows[index]
+
+        def typed(text: str | None) -> None:
+            if text is not None:
+                self._set(row.key, text)
+                self._ask_start(rows, index + 1)
+
+        self.app.push_screen(Ask(f"{row.key} ({row.meaning}):", value=row.value), typed)
+
+    def do_begin(self) -> None:
+        try:
+            plan = self.form.plan()
+        except PlanError as error:
+            self._to_key(error.key)
+            self.say(str(error), "alert")
+            return
+        variant = self.surefoot.variant
+        command = BeginVariant(*variant, plan) if variant is not None else BeginRun(plan)
+        if self.surefoot.perform(command):
+            self.surefoot.variant = None
+            self.surefoot.go("steps")
+
+    def _to_key(self, key: str) -> None:
+        """Put the cursor on the row of a key of the plan (`plan.stop.residual`, `start`)."""
+        wanted = key.removeprefix("plan.")
+        for index, row in enumerate(self.form.rows()):
+            if row.key == wanted or (wanted.startswith("start") and row.key.startswith("start ") and not row.value):
+                self.in_methods, self.at = False, index
+                self.redraw()
+                return
+
+
+def _order(traits: Traits) -> str:
+    return f"{traits.order:.4g}" if traits.order is not None else "-"
+
+
+def _number(text: str) -> float | None:
+    try:
+        return float.fromhex(text) if "0x" in text.lower() else float(text)
+    except ValueError:
+        return None
+
+
+def _wrapped(text: str, width: int, most: int) -> list[str]:
+    from textwrap import wrap
+
+    return wrap(text, width)[:most]
