@@ -25,10 +25,12 @@ from surefoot.screens.dialogs import Ask
 from surefoot.screens.driver import AsciiDriver, environment_at_start, wants_ascii
 from surefoot.screens.leaving import leaving_line
 from surefoot.screens.looks import DEFAULT_LOOK, LOOKS, Kind
+from surefoot.screens.pictures import Sampler
 from surefoot.screens.room import Room
 from surefoot.screens.words import clock, run_words, title_words
 from surefoot.session.commands import Command
 from surefoot.session.session import Session
+from surefoot.session.state import StatedProblem
 
 
 class SurefootApp(App[int], inherit_bindings=False):
@@ -66,6 +68,8 @@ class SurefootApp(App[int], inherit_bindings=False):
         self.session: Session | None = None
         self.rooms: dict[str, Room] = {}
         self.working = ""
+        self.variant: tuple[int, int] | None = None
+        self._sampler: Sampler | None = None
         self._stop = threading.Event()
 
     # -- beginning and ending ---------------------------------------------------------------------------------------
@@ -127,6 +131,7 @@ class SurefootApp(App[int], inherit_bindings=False):
         if self.session is not None:
             self.session.close()
             self.session = None
+        self.variant = None
         self._forget_rooms()
         self.go("opening")
 
@@ -244,6 +249,12 @@ class SurefootApp(App[int], inherit_bindings=False):
 
     def style_of(self, kind: Kind) -> str:
         return self.look.styles[kind]
+
+    def sampler(self, stated: StatedProblem) -> Sampler:
+        """Values of f for the pictures of a problem."""
+        if self._sampler is None or self._sampler.stated is not stated:
+            self._sampler = Sampler(stated)
+        return self._sampler
 
     def rule(self, width: int) -> str:
         return self.characters.rule * width

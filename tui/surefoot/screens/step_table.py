@@ -55,17 +55,18 @@ def table_lines(run: Run, window: Window, width: int, rows: int) -> list[tuple[s
     unit = f" [{problem.unit}]" if problem.unit else ""
     wide = width >= 80
     size = _WIDE if wide else _NARROW
-    x_texts = iterate_column([arithmetic.encode(iterate.x) for iterate in window.iterates], size)
+    first = max(len(window.iterates) - rows, 0)
+    numbers = [arithmetic.encode(iterate.x) for iterate in window.iterates]
+    x_texts = iterate_column(numbers[first:], size, numbers[first - 1] if first else None)
     heading = f"{'k':>4}  {(problem.unknown + unit)[:size]:<{size}} {'f':<10} {'d' + problem.unknown:<10} {'order':>5}"
     if wide:
         heading += f" {'ratio':>8} {'d' + problem.unknown + '/' + problem.unknown:>10}"
     lines = [(heading[:width], False)]
-    first = max(len(window.iterates) - rows, 0)
     for index in range(first, len(window.iterates)):
         iterate, measure = window.iterates[index], window.measures[index]
         residual = "no value" if isinstance(iterate.f, Failure) else short(arithmetic.encode(iterate.f))
         step = short(arithmetic.encode(measure.dx), 2) if measure.dx is not None else ""
-        row = f"{iterate.k:>4}  {x_texts[index]:<{size}} {residual:<10} {step:<9}{_flag(iterate)} {order(measure.order):>5}"
+        row = f"{iterate.k:>4}  {x_texts[index - first]} {residual:<10} {step:<9}{_flag(iterate)} {order(measure.order):>5}"
         if wide:
             relative = short(arithmetic.encode(measure.relative_dx), 2) if measure.relative_dx is not None else ""
             row += f" {ratio(measure.contraction):>8} {relative:>10}"
