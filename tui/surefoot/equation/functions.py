@@ -127,9 +127,14 @@ _ALSO_WRITTEN = MappingProxyType(
 )
 
 
+_LONGEST_COMPARED = 60  # comparing costs the product of the lengths
+
+
 def nearest(name: str, known: Iterable[str]) -> str:
     """The known name that was most likely meant by `name`; empty when none is near."""
-    candidates = sorted(known)
+    if len(name) > _LONGEST_COMPARED:
+        return ""
+    candidates = sorted(candidate for candidate in known if len(candidate) <= _LONGEST_COMPARED)
     folded = _folded(name)
     same = [candidate for candidate in candidates if _folded(candidate) == folded]
     if same:
