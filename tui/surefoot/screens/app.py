@@ -11,7 +11,7 @@ import os
 import signal
 import sys
 import threading
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from pathlib import Path
 from typing import ClassVar
 
@@ -69,6 +69,8 @@ class SurefootApp(App[int], inherit_bindings=False):
         self.rooms: dict[str, Room] = {}
         self.working = ""
         self.variant: tuple[int, int] | None = None
+        self.plan_table: Mapping[str, object] | None = None  # [plan] and [arithmetic] of the problem file in hand
+        self.arithmetic = "binary64"
         self._sampler: Sampler | None = None
         self._stop = threading.Event()
 
@@ -132,8 +134,13 @@ class SurefootApp(App[int], inherit_bindings=False):
             self.session.close()
             self.session = None
         self.variant = None
+        self.take_plan_of_file(None)
         self._forget_rooms()
         self.go("opening")
+
+    def take_plan_of_file(self, table: Mapping[str, object] | None, arithmetic: str = "binary64") -> None:
+        """Remember the plan of a problem file, from which the method room begins; None: there is none."""
+        self.plan_table, self.arithmetic = table, arithmetic
 
     def _forget_rooms(self) -> None:
         self.rooms = {place: room for place, room in self.rooms.items() if place == "opening"}
@@ -168,6 +175,7 @@ class SurefootApp(App[int], inherit_bindings=False):
         except (SurefootError, OSError) as error:
             self.tell(str(error), "alert")
             return
+        self.take_plan_of_file(None)
         self.take_in(session)
 
     def with_name(self, then: Callable[[], None]) -> None:

@@ -62,6 +62,9 @@ class Room(Screen[None]):
         """Lines above the message and the key line, `foot_lines` - 1 of them."""
         return []
 
+    def keep_draft(self) -> None:
+        """Write down half-typed text, before the program may end. A room without any has nothing to do."""
+
     # -- drawing ----------------------------------------------------------------------------------------------------
 
     @property
