@@ -9,10 +9,27 @@ Precedence, loosest first: or, and, not, comparisons, + and -, * and /, sign, ^ 
 from __future__ import annotations
 
 from collections.abc import Callable
+from contextlib import suppress
 from dataclasses import dataclass, field, replace
-from typing import Any, Literal, NoReturn, TypeAlias, cast
+from typing import Any, cast
 
-from surefoot.equation.functions import CONSTANTS, FUNCTIONS, WORDS, nearest
+from surefoot.equation.functions import FUNCTIONS, WORDS
+from surefoot.equation.refusals import (
+    ON_LINES,
+    Context,
+    Place,
+    Wanted,
+    fail,
+    refuse_arity,
+    refuse_behind_value,
+    refuse_call,
+    refuse_condition,
+    refuse_instead_of_value,
+    refuse_log,
+    refuse_table,
+    refuse_value,
+    refuse_word,
+)
 from surefoot.equation.tokens import Token, tokenize
 from surefoot.equation.tree import (
     Binary,
@@ -43,8 +60,6 @@ _PRECEDENCE = {
     **dict.fromkeys("*/", _MULTIPLY),
     "^": _POWER,
 }
-_VALUE_WANTED = "accepted: a number, a name, a function, - or ("
-_ON_LINES = "put parts of it on lines of [where]"
 
 
 def parse_equation(text: str) -> Equation:
@@ -90,9 +105,6 @@ class _Operator:
     prefix: bool = False
 
 
-_ContextKind: TypeAlias = Literal["text", "parenthesis", "call", "table", "piecewise"]
-
-
 @dataclass(slots=True)
 class _Context:
     """What is open: the text itself, or a parenthesis with what it belongs to.
@@ -104,7 +116,7 @@ class _Context:
         otherwise: the branch in hand is the last one.
     """
 
-    kind: _ContextKind
+    kind: Context
     opener: Token
     operands: list[_Part] = field(default_factory=list)
     operators: list[_Operator] = field(default_factory=list)
@@ -116,7 +128,7 @@ class _Context:
 class _Parser:
     """One parse of one text."""
 
-    def __init__(self, text: str, wanted: Literal["equation", "expression", "condition"]) -> None:
+    def __init__(self, text: str, wanted: Wanted) -> None:
         self._tokens = tokenize(text)
         self._before: Token | None = None
         self._token = next(self._tokens)
@@ -143,11 +155,11 @@ class _Parser:
             self._token = next(self._tokens)
         return token
 
-    def _open(self, kind: _ContextKind, opener: Token) -> _Context:
+    def _open(self, kind: Context, opener: Token) -> _Context:
         """Goes one level deeper; the parenthesis is the token in hand."""
         parenthesis = self._advance()
         if len(self._contexts) > MAX_DEPTH:
-            _fail(parenthesis, f"nested deeper than {MAX_DEPTH} levels", _ON_LINES)
+            fail(parenthesis, f"nested deeper than {MAX_DEPTH} levels", ON_LINES)
         context = _Context(kind, opener)
         self._contexts.append(context)
         return context
@@ -171,14 +183,14 @@ class _Parser:
             elif token.kind == "name" and self._read_name(context):
                 return
             elif token.kind != "name":
-                self._refuse_operand()
+                refuse_instead_of_value(self._place())
 
     def _read_name(self, context: _Context) -> bool:
         """Reads a name; whether it was a whole operand (a function leaves its first argument to be read)."""
         token = self._advance()
         word, opened = token.text, self._token.is_symbol("(")
         if word == "log":
-            _fail(token, "log is written for two logarithms", "write ln for the natural one, log10 for base 10")
+            refuse_log(token)
         if word == "otherwise" and _at_branch(context) and not (context.operands or context.operators):
             self._begin_otherwise(context, token)
         elif word == "piecewise" and opened:
@@ -187,13 +199,10 @@ class _Parser:
             self._open_table(token)
         elif word in FUNCTIONS and opened:
             self._open("call", token)
-        elif word in FUNCTIONS or word in ("piecewise", "table"):
-            example = {"piecewise": "(condition: value; otherwise: value)", "table": '("name", x)'}.get(word, "(...)")
-            _fail(token, f"{word} stands without its parenthesis", f"write {word}{example}")
-        elif word in WORDS:
-            _fail(token, f"{word} stands where a value is expected", _VALUE_WANTED)
+        elif word in FUNCTIONS or word in WORDS:
+            refuse_word(token)
         elif opened:
-            self._refuse_call(token)
+            refuse_call(token)
         else:
             context.operands.append(_Part(Name(word, token.column), 1, token))
             return True
@@ -201,19 +210,19 @@ class _Parser:
 
     def _begin_otherwise(self, context: _Context, token: Token) -> None:
         if not context.finished:
-            _fail(token, "otherwise stands first", "write a condition and its value before it")
+            fail(token, "otherwise stands first", "write a condition and its value before it")
         if not self._token.is_symbol(":"):
-            _fail(self._token, "otherwise needs a colon", "write otherwise: value")
+            fail(self._token, "otherwise needs a colon", "write otherwise: value")
         self._advance()
         context.otherwise = True
 
     def _open_table(self, token: Token) -> None:
         context = self._open("table", token)
         if self._token.kind != "string":
-            _fail(self._token, "the name of a table stands in quotes", 'write table("name", x)')
+            refuse_table(self._token, "name")
         context.table = self._advance().text
         if not self._token.is_symbol(","):
-            _fail(self._token, "a comma is expected behind the name of the table", 'write table("name", x)')
+            refuse_table(self._token, "comma")
         self._advance()
 
     # Operators
@@ -230,7 +239,7 @@ class _Parser:
             context.finished.append(self._finish())
             self._advance()
         else:
-            self._refuse_operator()
+            refuse_behind_value(self._place())
 
     def _push(self, context: _Context, token: Token) -> None:
         precedence = _PRECEDENCE[token.text]
@@ -289,9 +298,9 @@ class _Parser:
         """Takes `)`: the innermost context becomes an operand of the one around it."""
         context = self._contexts[-1]
         if context.kind == "text":
-            self._refuse_operator()
+            refuse_behind_value(self._place())
         if _at_branch(context) and not context.otherwise:
-            _fail(self._token, "the last branch has no value", "write condition: value, or otherwise: value")
+            fail(self._token, "the last branch has no value", "write condition: value, or otherwise: value")
         context.finished.append(self._finish())
         self._contexts.pop()
         build: dict[str, Callable[[_Context], _Part]] = {
@@ -308,14 +317,8 @@ class _Parser:
         opener, count = context.opener, len(context.finished)
         row = FUNCTIONS[opener.text]
         if not row.accepts(count):
-            wanted = f"{row.arity} argument{'s' if row.arity > 1 else ''}{' or more' if row.more else ''}"
             pairs = zip(context.finished, context.finished[1:], strict=False)
-            comma = any(_looks_decimal(a, b) for a, b in pairs)
-            _fail(
-                opener,
-                f"{row.name} takes {wanted}, {count} given",
-                "write decimals with a point, not a comma" if comma else row.meaning,
-            )
+            refuse_arity(opener, row, count, any(_looks_decimal(left, right) for left, right in pairs))
         arguments = tuple(self.value(part) for part in context.finished)
         return _built(Call(row.name, arguments, opener.column), context.finished, opener)
 
@@ -335,96 +338,25 @@ class _Parser:
     def value(self, part: _Part) -> Expression:
         """The part as an expression. Raises EquationError for a condition."""
         if isinstance(part.node, Comparison | Not | Junction):
-            _fail(
-                part.start,
-                "a condition stands where a value is expected",
-                "write the equation with one ="
-                if _is_equality(part.node)
-                else "write piecewise(condition: value; ...)",
-            )
+            refuse_condition(part.start, isinstance(part.node, Comparison) and part.node.relations == ("==",))
         return part.node
 
     def condition(self, part: _Part) -> Condition:
         """The part as a condition. Raises EquationError for an expression."""
         if not isinstance(part.node, Comparison | Not | Junction):
-            _fail(part.start, "a value stands where a condition is expected", "write a comparison such as x > 0")
+            refuse_value(part.start)
         return part.node
 
     # Refusals
 
-    def _refuse_operand(self) -> NoReturn:
-        token, before = self._token, self._before
-        behind = f" behind {before.text}" if before is not None and before.text else ""
-        if token.kind == "end":
-            empty = before is None
-            _fail(token, "there is no text" if empty else f"the text ends{behind}", _VALUE_WANTED)
-        if token.kind == "string":
-            _fail(token, "a name in quotes stands alone", 'write table("name", x)')
-        if token.is_symbol("=") and before is not None and before.text in ("<", ">", "=", "+", "-", "*", "/", "^"):
-            _fail(
-                token, f"{before.text}= with a space, or not an operator here", "accepted: <= >= == != without spaces"
-            )
-        _fail(token, f"a value is expected{behind}, not {token.text}", _VALUE_WANTED)
-
-    def _refuse_operator(self) -> NoReturn:
-        token, context = self._token, self._contexts[-1]
-        opener = context.opener
-        if token.kind == "end":
-            place = f"column {opener.column}" if opener.line == token.line else f"line {opener.line}"
-            _fail(token, f"the parenthesis of {place} is not closed", "write )")
-        if token.kind in ("number", "string", "name") or token.is_symbol("("):
-            self._refuse_side_by_side()
-        if token.is_symbol(")"):
-            _fail(token, "no parenthesis is open for this )", "delete it, or write ( before")
-        if token.is_symbol("="):
-            if self._wanted == "equation" and context.kind == "text":
-                _fail(token, "a second =", "an equation has one = at most")
-            compare = context.kind == "piecewise" or self._wanted == "condition"
-            _fail(token, "= is not accepted here", "write == to compare" if compare else "= stands once in an equation")
-        if token.is_symbol(","):
-            self._refuse_comma()
-        _fail(token, f"{token.text} is not accepted here", _branch_hint(context))
-
-    def _refuse_side_by_side(self) -> NoReturn:
-        """Two operands without an operator between them."""
-        before, token = cast(Token, self._before), self._token
-        if token.kind == "name" and token.text == "not":
-            _fail(token, "not stands behind a value", "write and not, or or not")
-        if before.kind == "number" and token.kind == "name" and before.touches(token) and token.text[0] == "_":
-            _fail(token, "a number has no underscores", "write its digits together")
-        if before.kind == "number" and token.kind == "name" and before.touches(token) and token.text[0] in "eE":
-            example = f"{before.text}*{token.text}"
-            _fail(token, f"{before.text}{token.text} is not a number", f"write {example}, or digits of the exponent")
-        if before.kind == "number" and token.kind == "number":
-            _fail(token, f"two numbers side by side: {before.text} {token.text}", "write an operator between them")
-        if token.kind == "string":
-            _fail(token, "a name in quotes stands alone", 'write table("name", x)')
-        if before.kind == "number" and token.text in ("f", "F"):
-            hint = f"write {before.text}*{token.text}, or {before.text}.0{token.text} for a single-precision literal"
-            _fail(token, "no operator between two values", hint)
-        left = "..." + before.text if before.is_symbol(")") else before.text
-        right = "(..." if token.is_symbol("(") else token.text
-        _fail(token, "no operator between two values", f"write {left}*{right} to multiply")
-
-    def _refuse_comma(self) -> NoReturn:
-        comma, before = self._token, cast(Token, self._before)
-        self._advance()
-        after = self._token
-        if before.kind == "number" and after.kind == "number" and before.touches(comma) and comma.touches(after):
-            _fail(comma, "a comma in a number", f"write {before.text}.{after.text} with a point")
-        if self._contexts[-1].kind == "piecewise":
-            _fail(comma, "branches are parted by semicolons", "write piecewise(condition: value; otherwise: value)")
-        _fail(comma, "a comma outside the arguments of a function", "accepted here: an operator, or the end")
-
-    def _refuse_call(self, token: Token) -> NoReturn:
-        if token.text in CONSTANTS:
-            _fail(token, f"{token.text} is a constant, not a function", f"write {token.text}*(...")
-        if token.text in ("pow", "power"):
-            _fail(token, f"{token.text} is not a function here", "write a^b")
-        near = nearest(token.text, FUNCTIONS)
-        multiply = f"{token.text}*(... to multiply"
-        _fail(
-            token, f"there is no function {token.text}", f"write {near}, or {multiply}" if near else f"write {multiply}"
+    def _place(self) -> Place:
+        context = self._contexts[-1]
+        after: Token | None = None
+        if self._token.is_symbol(","):
+            with suppress(EquationError):  # what is wrong further on can wait
+                after = next(self._tokens)
+        return Place(
+            self._token, self._before, after, self._wanted, context.kind, context.opener, last_branch=context.otherwise
         )
 
 
@@ -432,7 +364,7 @@ def _built(node: Expression | Condition, parts: list[_Part], start: Token) -> _P
     """A new subtree over `parts`. Raises EquationError when it is too high."""
     height = 1 + max(part.height for part in parts)
     if height > MAX_DEPTH:
-        _fail(start, f"more than {MAX_DEPTH} operations build upon each other", _ON_LINES)
+        fail(start, f"more than {MAX_DEPTH} operations build upon each other", ON_LINES)
     return _Part(node, height, start)
 
 
@@ -448,23 +380,7 @@ def _parts_end(context: _Context, token: Token) -> bool:
     return context.kind == "call" and token.is_symbol(",")
 
 
-def _branch_hint(context: _Context) -> str:
-    if context.kind == "piecewise" and context.otherwise:
-        return "otherwise is the last branch; accepted: )"
-    if context.kind == "piecewise":
-        return "write piecewise(condition: value; otherwise: value)"
-    return "accepted: an operator, " + ("or the end" if context.kind == "text" else "or )")
-
-
 def _looks_decimal(left: _Part, right: _Part) -> bool:
     """Whether two arguments look like one number with a decimal comma: `0,5`."""
     a, b = left.node, right.node
     return isinstance(a, Number) and isinstance(b, Number) and b.text.isdigit() and left.start.end + 1 == b.column
-
-
-def _is_equality(node: Condition) -> bool:
-    return isinstance(node, Comparison) and node.relations == ("==",)
-
-
-def _fail(token: Token, message: str, hint: str = "") -> NoReturn:
-    raise EquationError(message, line=token.line, column=token.column, hint=hint)
