@@ -8,48 +8,41 @@ Precedence, loosest first: or, and, not, comparisons, + and -, * and /, sign, ^ 
 
 from __future__ import annotations
 
-from collections.abc import Callable
 from contextlib import suppress
 from dataclasses import dataclass, field, replace
-from typing import Any, cast
 
 from surefoot.equation.functions import FUNCTIONS, WORDS
+from surefoot.equation.parts import (
+    MAX_DEPTH,
+    Part,
+    binary,
+    call,
+    chain,
+    condition_of,
+    lookup,
+    negated,
+    piecewise,
+    signed,
+    value_of,
+)
 from surefoot.equation.refusals import (
     ON_LINES,
     Context,
     Place,
     Wanted,
     fail,
-    refuse_arity,
     refuse_behind_value,
     refuse_call,
-    refuse_condition,
     refuse_instead_of_value,
     refuse_log,
     refuse_table,
-    refuse_value,
     refuse_word,
 )
-from surefoot.equation.tokens import Token, tokenize
-from surefoot.equation.tree import (
-    Binary,
-    Call,
-    Comparison,
-    Condition,
-    Equation,
-    Expression,
-    Junction,
-    Lookup,
-    Name,
-    Negate,
-    Not,
-    Number,
-    Piecewise,
-)
+from surefoot.equation.tokens import MAX_TEXT, Token, tokenize
+from surefoot.equation.tree import Condition, Equation, Expression, Name, Number
 from surefoot.errors import EquationError
 
-MAX_DEPTH = 200
-"""Height that a tree may have, and levels of parentheses that a text may have."""
+__all__ = ["MAX_DEPTH", "MAX_TEXT", "parse_condition", "parse_equation", "parse_expression"]
 
 _OR, _AND, _NOT, _COMPARE, _ADD, _MULTIPLY, _SIGN, _POWER = range(1, 9)
 _PRECEDENCE = {
@@ -60,6 +53,7 @@ _PRECEDENCE = {
     **dict.fromkeys("*/", _MULTIPLY),
     "^": _POWER,
 }
+_CHAINED = frozenset({_OR, _AND, _COMPARE})
 
 
 def parse_equation(text: str) -> Equation:
@@ -71,29 +65,20 @@ def parse_equation(text: str) -> Equation:
     parser = _Parser(text, "equation")
     last = parser.parse()
     left = last if parser.left is None else parser.left
-    right = None if parser.left is None else parser.value(last)
-    return Equation(parser.value(left), right, left.start.column)
+    right = None if parser.left is None else value_of(last)
+    return Equation(value_of(left), right, left.start.column)
 
 
 def parse_expression(text: str) -> Expression:
     """The tree of an expression. Raises EquationError as `parse_equation` does; `=` is refused."""
     parser = _Parser(text, "expression")
-    return parser.value(parser.parse())
+    return value_of(parser.parse())
 
 
 def parse_condition(text: str) -> Condition:
     """The tree of a condition. Raises EquationError as `parse_equation` does; `=` is refused."""
     parser = _Parser(text, "condition")
-    return parser.condition(parser.parse())
-
-
-@dataclass(frozen=True, slots=True)
-class _Part:
-    """A finished subtree, its height, and the token where it begins."""
-
-    node: Expression | Condition
-    height: int
-    start: Token
+    return condition_of(parser.parse())
 
 
 @dataclass(slots=True)
@@ -118,9 +103,9 @@ class _Context:
 
     kind: Context
     opener: Token
-    operands: list[_Part] = field(default_factory=list)
+    operands: list[Part] = field(default_factory=list)
     operators: list[_Operator] = field(default_factory=list)
-    finished: list[_Part] = field(default_factory=list)
+    finished: list[Part] = field(default_factory=list)
     table: str = ""
     otherwise: bool = False
 
@@ -134,9 +119,9 @@ class _Parser:
         self._token = next(self._tokens)
         self._wanted = wanted
         self._contexts = [_Context("text", self._token)]
-        self.left: _Part | None = None
+        self.left: Part | None = None
 
-    def parse(self) -> _Part:
+    def parse(self) -> Part:
         """Reads the whole text; what stands left of `=` goes to `left`."""
         while True:
             self._read_operand()
@@ -172,7 +157,7 @@ class _Parser:
             context, token = self._contexts[-1], self._token
             if token.kind == "number":
                 self._advance()
-                context.operands.append(_Part(Number(token.text, token.single, token.column), 1, token))
+                context.operands.append(Part(Number(token.text, token.single, token.column), 1, token))
                 return
             if token.is_symbol("("):
                 self._open("parenthesis", token)
@@ -204,7 +189,7 @@ class _Parser:
         elif opened:
             refuse_call(token)
         else:
-            context.operands.append(_Part(Name(word, token.column), 1, token))
+            context.operands.append(Part(Name(word, token.column), 1, token))
             return True
         return False
 
@@ -248,7 +233,7 @@ class _Parser:
         while operators and operators[-1].precedence > precedence:
             self._reduce(context)
         if operators and operators[-1].precedence == precedence and not right_associative:
-            if precedence in (_OR, _AND, _COMPARE):
+            if precedence in _CHAINED:
                 operators[-1].tokens.append(token)
                 return
             self._reduce(context)
@@ -256,36 +241,19 @@ class _Parser:
 
     def _reduce(self, context: _Context) -> None:
         """Applies the operator on top of the stack to its operands."""
-        operator = context.operators.pop()
+        operator, operands = context.operators.pop(), context.operands
+        first, last = operator.tokens[0], operands.pop()
         if operator.prefix:
-            parts = [context.operands.pop()]
+            part = negated(first, last) if operator.precedence == _NOT else signed(first, last)
+        elif operator.precedence in _CHAINED:
+            count = len(operator.tokens)
+            part = chain(operator.tokens, [*operands[-count:], last])
+            del operands[-count:]
         else:
-            count = len(operator.tokens) + 1
-            parts = context.operands[-count:]
-            del context.operands[-count:]
-        start = operator.tokens[0] if operator.prefix else parts[0].start
-        if operator.prefix and operator.tokens[0].text == "+":
-            self.value(parts[0])
-            context.operands.append(replace(parts[0], start=start))
-        else:
-            context.operands.append(_built(self._node(operator, parts, start), parts, start))
+            part = binary(first, operands.pop(), last)
+        operands.append(part)
 
-    def _node(self, operator: _Operator, parts: list[_Part], start: Token) -> Expression | Condition:
-        first = operator.tokens[0]
-        if operator.precedence == _NOT:
-            return Not(self.condition(parts[0]), first.column)
-        if operator.precedence in (_OR, _AND):
-            conditions = tuple(self.condition(part) for part in parts)
-            return Junction(cast(Any, first.text), conditions, start.column)
-        values = tuple(self.value(part) for part in parts)
-        if operator.precedence == _COMPARE:
-            relations = tuple(cast(Any, token.text) for token in operator.tokens)
-            return Comparison(values, relations, start.column)
-        if operator.prefix:
-            return Negate(values[0], first.column)
-        return Binary(cast(Any, first.text), values[0], values[1], first.column)
-
-    def _finish(self) -> _Part:
+    def _finish(self) -> Part:
         """The one operand that the innermost context comes to."""
         context = self._contexts[-1]
         while context.operators:
@@ -303,49 +271,9 @@ class _Parser:
             fail(self._token, "the last branch has no value", "write condition: value, or otherwise: value")
         context.finished.append(self._finish())
         self._contexts.pop()
-        build: dict[str, Callable[[_Context], _Part]] = {
-            "parenthesis": lambda context: replace(context.finished[0], start=context.opener),
-            "call": self._call,
-            "table": self._lookup,
-            "piecewise": self._piecewise,
-        }
-        part = build[context.kind](context)
+        part = _closed(context)
         self._advance()
         self._contexts[-1].operands.append(part)
-
-    def _call(self, context: _Context) -> _Part:
-        opener, count = context.opener, len(context.finished)
-        row = FUNCTIONS[opener.text]
-        if not row.accepts(count):
-            pairs = zip(context.finished, context.finished[1:], strict=False)
-            refuse_arity(opener, row, count, any(_looks_decimal(left, right) for left, right in pairs))
-        arguments = tuple(self.value(part) for part in context.finished)
-        return _built(Call(row.name, arguments, opener.column), context.finished, opener)
-
-    def _lookup(self, context: _Context) -> _Part:
-        node = Lookup(context.table, self.value(context.finished[0]), context.opener.column)
-        return _built(node, context.finished, context.opener)
-
-    def _piecewise(self, context: _Context) -> _Part:
-        parts = context.finished
-        last = self.value(parts[-1]) if context.otherwise else None
-        pairs = zip(parts[: len(parts) // 2 * 2 : 2], parts[1::2], strict=True)
-        branches = tuple((self.condition(condition), self.value(value)) for condition, value in pairs)
-        return _built(Piecewise(branches, last, context.opener.column), parts, context.opener)
-
-    # Sorts
-
-    def value(self, part: _Part) -> Expression:
-        """The part as an expression. Raises EquationError for a condition."""
-        if isinstance(part.node, Comparison | Not | Junction):
-            refuse_condition(part.start, isinstance(part.node, Comparison) and part.node.relations == ("==",))
-        return part.node
-
-    def condition(self, part: _Part) -> Condition:
-        """The part as a condition. Raises EquationError for an expression."""
-        if not isinstance(part.node, Comparison | Not | Junction):
-            refuse_value(part.start)
-        return part.node
 
     # Refusals
 
@@ -360,12 +288,16 @@ class _Parser:
         )
 
 
-def _built(node: Expression | Condition, parts: list[_Part], start: Token) -> _Part:
-    """A new subtree over `parts`. Raises EquationError when it is too high."""
-    height = 1 + max(part.height for part in parts)
-    if height > MAX_DEPTH:
-        fail(start, f"more than {MAX_DEPTH} operations build upon each other", ON_LINES)
-    return _Part(node, height, start)
+def _closed(context: _Context) -> Part:
+    """What a context comes to when its parenthesis closes."""
+    opener, finished = context.opener, context.finished
+    if context.kind == "call":
+        return call(opener, finished)
+    if context.kind == "table":
+        return lookup(opener, context.table, finished[0])
+    if context.kind == "piecewise":
+        return piecewise(opener, finished, context.otherwise)
+    return replace(finished[0], start=opener)
 
 
 def _at_branch(context: _Context) -> bool:
@@ -378,9 +310,3 @@ def _parts_end(context: _Context, token: Token) -> bool:
     if context.kind == "piecewise":
         return not context.otherwise and token.is_symbol(":" if _at_branch(context) else ";")
     return context.kind == "call" and token.is_symbol(",")
-
-
-def _looks_decimal(left: _Part, right: _Part) -> bool:
-    """Whether two arguments look like one number with a decimal comma: `0,5`."""
-    a, b = left.node, right.node
-    return isinstance(a, Number) and isinstance(b, Number) and b.text.isdigit() and left.start.end + 1 == b.column
