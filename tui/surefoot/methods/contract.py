@@ -52,14 +52,17 @@ class Account:
     Attributes:
         shape: the picture that explains the step.
         points: the points it rests on (x, f), in the order of the method's definition.
-        slope: the derivative or the chord's slope that was used, None where there is none.
-        figures: further named numbers: ("h", h), ("width", b - a), ("age", steps since the derivative was refreshed).
+        slope: the derivative or the chord's slope that was used, None where there is none. A tangent or a chord is the
+            line of this slope through the first point.
+        figures: further named numbers: ("h", h), ("width", |b - a|), ("age", steps since the derivative was refreshed).
+        step: dx as the rule computed it, before it was added to x; None where the rule gives the new x itself.
     """
 
     shape: Shape
     points: tuple[Point, ...]
     slope: Real | None = None
     figures: tuple[tuple[str, Real], ...] = ()
+    step: Real | None = None
 
 
 @dataclass(frozen=True, slots=True)
@@ -216,21 +219,29 @@ class Spent:
 
 @dataclass(frozen=True, slots=True)
 class Ending:
-    """How a run ended: its outcome, the verdict behind it, and one sentence with the figures."""
+    """How a run ended: its outcome, the verdict behind it, and one sentence with the figures.
+
+    `account` is what the rule saw when it broke down, None otherwise.
+    """
 
     outcome: Outcome
     verdict: Verdict | None
     says: str
+    account: Account | None = None
 
 
 @dataclass(frozen=True, slots=True)
 class Begun:
-    """A run after its starts were evaluated. `state` is None when a start failed."""
+    """A run after its starts were evaluated. `state` is None when a start failed or was an exact zero.
+
+    `readings` are plain sentences on what the plan left open and how it was read.
+    """
 
     iterates: tuple[Iterate, ...]
     state: State | None
     spent: Spent
     ending: Ending | None
+    readings: tuple[str, ...] = ()
 
 
 @dataclass(frozen=True, slots=True)
@@ -253,7 +264,13 @@ class Progress:
 
 @dataclass(frozen=True, slots=True)
 class Stepped:
-    """One step of a run. `iterate` is None when the run ended without a new one (breakdown, test before the step)."""
+    """One step of a run.
+
+    Attributes:
+        iterate: None when the run ended without a new one (breakdown, failed derivative, test before the step), and
+            when the user stopped the evaluation: then `ending` is None too and nothing happened.
+        state: what the next step is made from, None when f failed at the new iterate.
+    """
 
     iterate: Iterate | None
     state: State | None
