@@ -2,7 +2,12 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from datetime import UTC, datetime
+from typing import TypeAlias
+
+Clock: TypeAlias = Callable[[], str]
+"""Gives the time in the form of `utc_now`."""
 
 
 def utc_now() -> str:

@@ -79,7 +79,7 @@ class RunBegun:
 
 @dataclass(frozen=True, slots=True)
 class StepTaken:
-    """One step of the run in hand. `iterate` is None when the run ended without a new one."""
+    """One step of the run in hand. `iterate` and `state` are None when the run ended without a new one."""
 
     kind: ClassVar[str] = "step_taken"
 

@@ -167,8 +167,8 @@ def _problem_of(state: SessionState, what: RunBegun) -> StatedProblem:
 def _stepped(state: SessionState, event: Event, what: StepTaken) -> SessionState:
     run = _in_hand(state)
     if what.iterate is None:
-        if what.ending is None:
-            raise RecordError("a step without an iterate must end the run")
+        if what.ending is None or what.state is not None:
+            raise RecordError("a step without an iterate must end the run, and leaves the method's state as it was")
         return _doing(state, event, "the end of the run", **_with(state, _ended(run, what)))
     steps = run.steps + 1
     return _doing(state, event, f"step {steps}", **_with(state, _going_on(run, what, what.iterate, steps)))
@@ -187,7 +187,7 @@ def _going_on(run: Run, what: StepTaken | IteratePut, iterate: Iterate, steps: i
 
 
 def _ended(run: Run, what: StepTaken) -> Run:
-    return _changed(run, run.iterates, what.state, run.steps, run.spent + what.spent, what.ending)
+    return _changed(run, run.iterates, run.state, run.steps, run.spent + what.spent, what.ending)
 
 
 def _changed(
