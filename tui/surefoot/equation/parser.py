@@ -177,6 +177,8 @@ class _Parser:
         if word == "log":
             refuse_log(token)
         if word == "otherwise" and _at_branch(context) and not (context.operands or context.operators):
+            if context.otherwise:
+                fail(token, "a second otherwise", "write the value of the last branch")
             self._begin_otherwise(context, token)
         elif word == "piecewise" and opened:
             self._open("piecewise", token)
