@@ -97,9 +97,8 @@ def controlled(
 
 
 def damping(here: Here, move: Move) -> Move:
-    """dx := damping * dx."""
-    factor = here.limits.numbers["damping"]
-    return move if factor == 1 else _by(here, here.arithmetic.multiply(factor, move.step))
+    """dx := damping * dx. A factor of one still rounds x_k + dx, as a host code does that always multiplies."""
+    return _by(here, here.arithmetic.multiply(here.limits.numbers["damping"], move.step))
 
 
 def first_step_limit(here: Here, move: Move) -> Move:

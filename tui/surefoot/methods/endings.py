@@ -22,8 +22,8 @@ class Endings:
         return Ending("converged", verdict, f"{verdict.test} holds after {_steps(steps)}: {self._sides(verdict.sides)}")
 
     def exact(self, verdict: Verdict, iterate: Iterate) -> Ending:
-        """f is exactly zero."""
-        return Ending("converged", verdict, f"f is exactly zero at {self._at(iterate.x)}")
+        """The residual is exactly zero."""
+        return Ending("converged", verdict, f"the residual is exactly zero at {self._at(iterate.x)}")
 
     def step_limit(self, max_steps: int, unmet: Iterable[Side]) -> Ending:
         """The cap was reached; `unmet` are the inequalities of the tests as they stood."""
@@ -46,7 +46,7 @@ class Endings:
         return Ending("left_range", None, f"{self._at(iterate.x)} lies outside the working range {low} to {high}")
 
     def no_value(self, what: str, x: Real, failure: Failure) -> Ending:
-        """`what` ("f", "the derivative", "g", "the stopping test") has no finite value at x."""
+        """`what` ("the residual", "the derivative", "g", "the stopping test") has no finite value at x."""
         return Ending("failed_evaluation", None, f"{what} has no value at {self._at(x)}: {failure}")
 
     def broke_down(self, breakdown: Breakdown) -> Ending:

@@ -187,7 +187,7 @@ class Stepper:
     # Endings
 
     def _failed(self, iterate: Iterate) -> Ending | None:
-        return self._endings.no_value("f", iterate.x, iterate.f) if isinstance(iterate.f, Failure) else None
+        return self._endings.no_value("the residual", iterate.x, iterate.f) if isinstance(iterate.f, Failure) else None
 
     def _exact(self, iterate: Iterate) -> Ending | None:
         zero = exact_zero(self._arithmetic, iterate) if self._plan.stop.exact_zero else None

@@ -152,4 +152,4 @@ _SIDES: Mapping[str, Callable[[Arithmetic, Tests, Stride], tuple[Real, Real] | N
     {"x_absolute": _absolute, "x_relative": _relative, "sum": _sum, "residual": _residual}
 )
 
-_LEFT = MappingProxyType({"x_absolute": "|dx|", "x_relative": "|dx|", "sum": "|dx|", "residual": "|f|"})
+_LEFT = MappingProxyType({"x_absolute": "|dx|", "x_relative": "|dx|", "sum": "|dx|", "residual": "|residual|"})

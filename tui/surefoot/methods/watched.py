@@ -22,7 +22,7 @@ class Watched:
 
     def f(self, x: Real) -> Real:
         """The residual at x."""
-        self.what, self.x = "f", x
+        self.what, self.x = "the residual", x
         return self._functions.f(x)
 
     def derivative(self, x: Real, order: int = 1) -> Real:
