@@ -1,8 +1,8 @@
 """The one table of keys. Bindings, key lines, the page of keys and the guide are made from it.
 
-`ROOMS` are the screens one moves between; a key belongs to one of them, to `everywhere`, or to a text `field`. A key with
-a `needs` is offered only when the session's state allows that command; elsewhere it is shown in parentheses and, when
-pressed, says why not.
+`ROOMS` are the screens one moves between; a key belongs to one of them, to `EVERYWHERE`, or to a text `FIELD`. A key
+with a `needs` is offered only when the session's state allows that command; else it is shown in parentheses and says
+why not when it is pressed.
 """
 
 from __future__ import annotations
@@ -41,8 +41,8 @@ class Key:
 ROOMS: tuple[str, ...] = ("function", "method", "steps", "record")
 
 EVERYWHERE: tuple[Key, ...] = (
-    Key("go_function", ("1", "alt+1"), "1", "function", "Go to the function: equation, definitions, inputs.", line=False),
-    Key("go_method", ("2", "alt+2"), "2", "method", "Go to the method: plan, starts, limits, stopping test.", line=False),
+    Key("go_function", ("1", "alt+1"), "1", "function", "Go to the function: equation and inputs.", line=False),
+    Key("go_method", ("2", "alt+2"), "2", "method", "Go to the method: starts, limits, stopping test.", line=False),
     Key("go_steps", ("3", "alt+3"), "3", "steps", "Go to the steps of the run in hand.", line=False),
     Key("go_record", ("4", "alt+4"), "4", "record", "Go to the record: events, recomputing.", line=False),
     Key("leave", ("ctrl+q",), "ctrl+q", "leave", "Leave the program; all that was done is on disk.", line=False),
@@ -90,7 +90,7 @@ PLACES: Mapping[str, tuple[Key, ...]] = {
         Key("trial", ("t",), "t", "trial steps", "Where each method would land from here; takes no step."),
         Key("picture", ("c",), "c", "convergence", "Change the picture: f with the step, or convergence.", line=False),
         Key("zoom", ("z",), "z", "zoom", "Show f over the working range or around the iterates.", line=False),
-        Key("put", ("p",), "p", "put x", "Go on from an x of your own; a reason is asked.", asked.PutIterate, line=False),
+        Key("put", ("p",), "p", "put x", "Go on from an x of your own, with a reason.", asked.PutIterate, line=False),
         Key("variant", ("v",), "v", "variant", "Begin a run from this iterate under a changed plan.", line=False),
         Key("other_run", ("r",), "r", "other run", "Take up the next run.", asked.TakeUp, line=False),
         Key("abandon", ("d",), "d", "abandon", "End the run without a verdict.", asked.Abandon, line=False),

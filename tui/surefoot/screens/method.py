@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from textwrap import wrap
 from typing import ClassVar
 
 from rich.text import Text
@@ -14,7 +15,7 @@ from surefoot.methods.contract import Traits
 from surefoot.methods.table import METHODS
 from surefoot.screens.commands import bindings_of
 from surefoot.screens.dialogs import Ask, Choose
-from surefoot.screens.pictures import Sampler, start_picture
+from surefoot.screens.pictures import start_picture
 from surefoot.screens.plan_form import PlanForm, PlanRow, form_of_plan, form_of_table
 from surefoot.screens.room import Room
 from surefoot.screens.widgets.lines import Lines
@@ -144,8 +145,9 @@ class MethodRoom(Room):
             view.show([])
             return
         sampler = self.surefoot.sampler(state.stated)
-        starts = [value for row, value in self._starts() if value is not None]
-        view.show(start_picture(sampler, starts, self.zoomed, view.size.width, view.size.height, self.characters))
+        starts = [value for _, value in self._starts() if value is not None]
+        characters = self.surefoot.characters
+        view.show(start_picture(sampler, starts, self.zoomed, view.size.width, view.size.height, characters))
 
     def _starts(self) -> list[tuple[PlanRow, float | None]]:
         rows = [row for row in self.form.rows() if row.key.startswith("start ")]
@@ -252,6 +254,4 @@ def _number(text: str) -> float | None:
 
 
 def _wrapped(text: str, width: int, most: int) -> list[str]:
-    from textwrap import wrap
-
     return wrap(text, width)[:most]

@@ -66,7 +66,8 @@ def table_lines(run: Run, window: Window, width: int, rows: int) -> list[tuple[s
         iterate, measure = window.iterates[index], window.measures[index]
         residual = "no value" if isinstance(iterate.f, Failure) else short(arithmetic.encode(iterate.f))
         step = short(arithmetic.encode(measure.dx), 2) if measure.dx is not None else ""
-        row = f"{iterate.k:>4}  {x_texts[index - first]} {residual:<10} {step:<9}{_flag(iterate)} {order(measure.order):>5}"
+        row = f"{iterate.k:>4}  {x_texts[index - first]} {residual:<10} {step:<9}{_flag(iterate)}"
+        row += f" {order(measure.order):>5}"
         if wide:
             relative = short(arithmetic.encode(measure.relative_dx), 2) if measure.relative_dx is not None else ""
             row += f" {ratio(measure.contraction):>8} {relative:>10}"

@@ -11,8 +11,8 @@ from textual.app import ComposeResult
 from textual.binding import Binding, BindingType
 from textual.containers import Horizontal
 
-from surefoot.equation.results import Failure
-from surefoot.errors import Refused
+from surefoot.equation.results import Failure, Real
+from surefoot.errors import Refused, SurefootError
 from surefoot.figures.numbers import short, significant
 from surefoot.screens.account import account_words
 from surefoot.screens.commands import bindings_of
@@ -161,10 +161,17 @@ class StepsRoom(Room):
             self.landings = None
             return
         rows = []
-        for landing in session.trial():
+        try:
+            landings = session.trial()
+        except SurefootError as error:
+            self.say(str(error), "alert")
+            return
+        for landing in landings:
             x = significant(record_text(run, landing.x), 12) if landing.x is not None else "-"
-            known = landing.f is not None and not isinstance(landing.f, Failure)
-            rows.append((landing.method, x, short(record_text(run, abs(landing.f))) if known else "-", landing.says))
+            residual = "-"
+            if landing.f is not None and not isinstance(landing.f, Failure):
+                residual = short(record_text(run, abs(landing.f))).lstrip("+")
+            rows.append((landing.code, x, residual, landing.why or _no_value(landing.f)))
         self.landings = ["", *landing_lines(rows, self.size.width - 1), "", "   t goes back to the steps"]
 
     def do_picture(self) -> None:
@@ -217,6 +224,10 @@ class StepsRoom(Room):
                 self.surefoot.perform(Abandon(reason))
 
         self.app.push_screen(Ask("Why is this run abandoned?", check=_reason_fault), reasoned)
+
+
+def _no_value(f: Real | Failure | None) -> str:
+    return str(f) if isinstance(f, Failure) else ""
 
 
 def _count_fault(answer: str) -> str:

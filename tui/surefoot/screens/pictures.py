@@ -1,0 +1,130 @@
+"""The pictures of the rooms: f sampled over a window, with what a step took for true, as lines of text.
+
+Samples are evaluations with the purpose `picture`, of a meter of their own: they never count as the solve's cost. They
+are made in binary64, whatever arithmetic a run has, since a cell of the terminal shows two digits.
+"""
+
+from __future__ import annotations
+
+from collections import OrderedDict
+from collections.abc import Callable, Sequence
+from typing import TypeAlias
+
+from surefoot.equation.binary64 import BINARY64
+from surefoot.equation.checking import check_problem
+from surefoot.equation.choice import arithmetic_of
+from surefoot.equation.function import Function
+from surefoot.equation.meter import Meter
+from surefoot.equation.results import Failure, Purpose, Real, Stopped
+from surefoot.figures.characters import Characters
+from surefoot.figures.convergence_picture import convergence_picture
+from surefoot.figures.function_picture import Samples, StepShape, function_picture, zoom
+from surefoot.figures.picture import Axis
+from surefoot.figures.plot import draw
+from surefoot.methods.contract import Account, Iterate
+from surefoot.methods.table import method_of
+from surefoot.screens.step_table import Window
+from surefoot.session.state import Run, StatedProblem
+
+_Near: TypeAlias = Callable[[Real], float]
+
+_SAMPLES_A_CELL = 2
+_KEPT = 16  # windows whose samples are kept: the ones one comes back to
+_SHOWN_ITERATES = 200
+_CONVERGENCE_STEPS = 400
+
+
+class Sampler:
+    """Values of f of one problem for pictures, kept by window."""
+
+    def __init__(self, stated: StatedProblem) -> None:
+        self.stated = stated
+        self.meter = Meter(Function(check_problem(stated.problem), BINARY64, stated.derivatives))
+        self._kept: OrderedDict[tuple[float, float, int], Samples] = OrderedDict()
+
+    def over(self, low: float, high: float, count: int) -> Samples:
+        """f at `count` places from low to high; None where it has no value."""
+        key = (low, high, count)
+        if key not in self._kept:
+            xs = [low * (1 - n / (count - 1)) + high * (n / (count - 1)) for n in range(count)]
+            self._kept[key] = (xs, [_finite(self.meter.evaluate(x, Purpose.PICTURE)) for x in xs])
+            while len(self._kept) > _KEPT:
+                self._kept.popitem(last=False)
+        self._kept.move_to_end(key)
+        return self._kept[key]
+
+    @property
+    def range(self) -> tuple[float, float] | None:
+        """The working range, None when the problem gives none."""
+        ends = self.stated.problem.range
+        return None if ends is None else (BINARY64.literal(ends[0], False), BINARY64.literal(ends[1], False))
+
+
+def start_picture(
+    sampler: Sampler, starts: Sequence[float], zoomed: bool, width: int, height: int, characters: Characters
+) -> list[str]:
+    """f over the range, or around the starts, with the starts marked."""
+    points = [(start, None) for start in starts]
+    window = zoom(points, count=2) if zoomed and starts else sampler.range or zoom(points, count=2)
+    if window is None:
+        return ["", " Give the working range (1 function) or a start", " to see f here."][:height]
+    return draw(
+        function_picture(_samples(sampler, window, width), iterates=points, x=_x_axis(sampler), f=Axis("f")),
+        width,
+        height,
+        characters,
+    )
+
+
+def step_lines(
+    sampler: Sampler, run: Run, window: Window, zoomed: bool, width: int, height: int, characters: Characters
+) -> list[str]:
+    """f with the step that led to the iterate under the cursor."""
+    arithmetic = arithmetic_of(run.plan.arithmetic)
+    near = arithmetic.approximate
+    shown = window.iterates[max(0, window.at + 1 - _SHOWN_ITERATES) : window.at + 1]
+    points = [(near(iterate.x), _value(near, iterate.f)) for iterate in shown]
+    span = zoom(points) if zoomed else sampler.range or zoom(points, count=len(points))
+    if span is None:
+        return []
+    iterate = window.current
+    shape = _shape(near, iterate, iterate.account) if iterate.account is not None else None
+    picture = function_picture(
+        _samples(sampler, span, width), iterates=points, step=shape, x=_x_axis(sampler), f=Axis("f")
+    )
+    return draw(picture, width, height, characters)
+
+
+def convergence_lines(run: Run, width: int, height: int, characters: Characters) -> list[str]:
+    """|dx| and |f| by step."""
+    near = arithmetic_of(run.plan.arithmetic).approximate
+    tail = run.iterates.newest(_CONVERGENCE_STEPS)
+    steps: list[tuple[int, float | None, float | None]] = []
+    for before, iterate in zip((None, *tail), tail, strict=False):
+        dx = None if before is None else near(iterate.x - before.x)
+        steps.append((iterate.k, dx, _value(near, iterate.f)))
+    bracket = method_of(run.plan.method).traits.bracket
+    return draw(convergence_picture(steps, bracket=bracket), width, height, characters)
+
+
+def _samples(sampler: Sampler, window: tuple[float, float], width: int) -> Samples:
+    return sampler.over(*window, max(width, 2) * _SAMPLES_A_CELL)
+
+
+def _x_axis(sampler: Sampler) -> Axis:
+    return Axis(sampler.stated.problem.unknown, sampler.stated.problem.unit)
+
+
+def _shape(near: _Near, iterate: Iterate, account: Account) -> StepShape:
+    points = tuple((near(point.x), near(point.f)) for point in account.points)
+    landing = None if iterate.raw is None else near(iterate.raw)
+    slope = None if account.slope is None else near(account.slope)
+    return StepShape(account.shape, points, landing, slope)
+
+
+def _value(near: _Near, f: Real | Failure) -> float | None:
+    return None if isinstance(f, Failure) else near(f)
+
+
+def _finite(result: Real | Failure | Stopped) -> float | None:
+    return None if isinstance(result, Failure | Stopped) else result
