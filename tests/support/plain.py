@@ -10,7 +10,8 @@ from __future__ import annotations
 import math
 import re
 from collections.abc import Callable, Mapping
-from typing import Any
+from dataclasses import dataclass
+from typing import Any, cast
 
 import mpmath
 
@@ -33,46 +34,57 @@ def python_text(text: str) -> str:
     return _NUMBER.sub(r'N("\1")', text.replace("^", "**"))
 
 
-def plain(text: str, unknown: str, inputs: Mapping[str, float]) -> Callable[[float], float]:
-    """f(x) in Python's floats and the `math` module. Raises ValueError, OverflowError, ZeroDivisionError as that does."""
-    code = compile(python_text(text), text, "eval")
-    names = {**_FLOAT_NAMES, **inputs}
+@dataclass(frozen=True, slots=True)
+class Formula:
+    """Text over an unknown and inputs, with lines (name, text) to go through before it."""
 
-    def f(x: float) -> float:
-        value = eval(code, {**names, unknown: x})
-        if not isinstance(value, float):
-            raise ValueError("no real value")
-        if not math.isfinite(value):
-            raise OverflowError("not finite")
-        return value
+    text: str
+    unknown: str
+    inputs: Mapping[str, float]
+    lines: tuple[tuple[str, str], ...] = ()
 
-    return f
+    def _evaluator(self, names: Mapping[str, Any]) -> Callable[[Any], Any]:
+        steps = [(name, compile(python_text(text), text, "eval")) for name, text in self.lines]
+        last = compile(python_text(self.text), self.text, "eval")
+
+        def evaluated(x: Any) -> Any:
+            known = {**names, self.unknown: x}
+            for name, code in steps:
+                known[name] = eval(code, known)
+            return eval(last, known)
+
+        return evaluated
+
+    def plain(self) -> Callable[[float], float]:
+        """In Python's floats. Raises ValueError, OverflowError, ZeroDivisionError or TypeError as Python does."""
+        evaluated = self._evaluator({**_FLOAT_NAMES, **self.inputs})
+
+        def f(x: float) -> float:
+            value = evaluated(x)
+            if not isinstance(value, float):
+                raise TypeError("no real value")
+            if not math.isfinite(value):
+                raise OverflowError("not finite")
+            return value
+
+        return f
+
+    def exact(self) -> Callable[[Any], Any]:
+        """In 200 bits, over the same binary64 literals and inputs."""
+        return self._evaluator({**_MP_NAMES, **{name: MP.mpf(value) for name, value in self.inputs.items()}})
+
+    def rounded(self) -> Callable[[float], Rounded]:
+        """In 200 bits, with a first-order bound of the error that binary64 makes from the same x."""
+        inputs = {name: Rounded(MP.mpf(value)) for name, value in self.inputs.items()}
+        evaluated = self._evaluator({**_ROUNDED_NAMES, **inputs})
+        return lambda x: cast(Rounded, evaluated(Rounded(MP.mpf(x))))
 
 
-def exact(text: str, unknown: str, inputs: Mapping[str, float]) -> Callable[[Any], Any]:
-    """f(x) in 200 bits, over the same binary64 literals and inputs."""
-    code = compile(python_text(text), text, "eval")
-    names = {**_MP_NAMES, **{name: MP.mpf(value) for name, value in inputs.items()}}
-    return lambda x: eval(code, {**names, unknown: x})
-
-
-def rounded(text: str, unknown: str, inputs: Mapping[str, float]) -> Callable[[float], Rounded]:
-    """f(x) in 200 bits, with a first-order bound of the error that binary64 makes from the same x."""
-    code = compile(python_text(text), text, "eval")
-    names = {**_ROUNDED_NAMES, **{name: Rounded(MP.mpf(value)) for name, value in inputs.items()}}
-
-    def f(x: float) -> Rounded:
-        value = eval(code, {**names, unknown: Rounded(MP.mpf(x))})
-        assert isinstance(value, Rounded)
-        return value
-
-    return f
-
-
-def residual_text(equation: str) -> str:
-    """Left minus right, as one expression."""
-    left, equals, right = _split_equation(equation)
-    return f"({left}) - ({right})" if equals else left
+def residual_of(row: Mapping[str, Any]) -> Formula:
+    """The residual of a row of published.json or failures.json: left minus right."""
+    left, equals, right = _split_equation(row["equation"])
+    inputs = {name: float(text.split()[0]) for name, text in row["parameters"].items()}
+    return Formula(f"({left}) - ({right})" if equals else left, row["unknown"], inputs)
 
 
 class Rounded:

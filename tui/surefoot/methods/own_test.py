@@ -24,7 +24,7 @@ from surefoot.equation.tree import Comparison, Condition, Junction, Not
 from surefoot.equation.wording import names_in, to_text
 from surefoot.errors import EquationError, PlanError
 from surefoot.methods.contract import Functions, Method, State, Verdict
-from surefoot.methods.stopping import Side, Stride, tested_step
+from surefoot.methods.stopping import Side, Stride, step_under_test
 
 _ALWAYS = ("x_k", "f_k", "x_prev", "f_prev", "f_0", "dx", "dx_raw", "k")
 _KEY = "plan.stop.test"
@@ -138,7 +138,7 @@ def _value_of(name: str, stride: Stride, state: State, steps: int, functions: Fu
         case "width":
             return abs(arithmetic.subtract(state.b.x, state.a.x))
         case _:
-            return tested_step(arithmetic, stride, raw=name == "dx_raw")
+            return step_under_test(arithmetic, stride, raw=name == "dx_raw")
 
 
 def _comparisons(tree: Condition) -> Iterator[Comparison]:

@@ -16,7 +16,7 @@ from surefoot.methods.own_test import parse_test
 from surefoot.methods.plan import Control, Plan, Stop
 from surefoot.methods.preparation import arithmetic_of_plan, iteration_function, uses_host_derivative
 from surefoot.methods.settings import read_number, read_settings
-from surefoot.methods.stopping import read_tests
+from surefoot.methods.stopping import read_tolerances
 from surefoot.methods.table import method_of
 from surefoot.methods.tangent import SlopeState
 
@@ -98,9 +98,9 @@ def _check_order(control: Control) -> None:
 
 
 def _check_stop(stop: Stop, method: Method, arithmetic: Arithmetic, checked: CheckedProblem) -> None:
-    tests = read_tests(stop, arithmetic)
+    tolerances = read_tolerances(stop, arithmetic)
     for key in ("x_absolute", "x_relative", "residual"):
-        tolerance = getattr(tests, key)
+        tolerance = getattr(tolerances, key)
         if tolerance is not None and tolerance < 0:
             raise PlanError("a tolerance must not be below zero", key=f"plan.stop.{key}")
     if stop.min_steps < 0:

@@ -8,7 +8,7 @@ its annotations, so a new method brings no codec of its own.
 from __future__ import annotations
 
 from collections.abc import Callable, Mapping
-from dataclasses import fields
+from dataclasses import dataclass, fields
 from functools import cache
 from types import NoneType, UnionType
 from typing import Any, TypeAlias, Union, get_args, get_origin, get_type_hints
@@ -39,15 +39,25 @@ _OUTCOMES = frozenset(get_args(Outcome))
 _MALFORMED = (KeyError, IndexError, TypeError, ValueError, AttributeError)
 
 
+@dataclass(frozen=True, slots=True)
+class _Field:
+    """How a field of a state is written and read; one that may be None is left out where it is."""
+
+    name: str
+    write: _Write
+    read: _Read
+    optional: bool
+
+
 def encode_state(state: State, arithmetic: Arithmetic) -> dict[str, object]:
     """A method's state as content."""
     encode = arithmetic.encode
-    content: dict[str, object] = {}
     state_type: Any = type(state)
-    for name, write, _ in _field_codecs(state_type):
-        value = getattr(state, name)
+    content: dict[str, object] = {}
+    for field in _fields_of(state_type):
+        value = getattr(state, field.name)
         if value is not None:
-            content[name] = write(value, encode)
+            content[field.name] = field.write(value, encode)
     return content
 
 
@@ -55,28 +65,38 @@ def decode_state(method: Method, content: Content, arithmetic: Arithmetic) -> St
     """The inverse of `encode_state`. Raises RecordError for content that is no state of the method."""
     decode = arithmetic.decode
     state_type: Any = method.state_type
-    codecs = _field_codecs(state_type)
+    values: list[Any] = []
+    left = len(content)
     try:
-        values = [read(content[name], decode) if name in content else None for name, _, read in codecs]
-        if len(content) + values.count(None) != len(codecs):
-            raise RecordError(f"not a state of {method.traits.code}: {', '.join(content)}")
-        return state_type(*values)
+        for field in _fields_of(state_type):
+            if field.optional and field.name not in content:
+                values.append(None)
+            else:
+                values.append(field.read(content[field.name], decode))
+                left -= 1
     except _MALFORMED as error:
         raise RecordError(f"not a state of {method.traits.code}: {error}") from error
+    if left:
+        raise RecordError(f"not a state of {method.traits.code}: it holds {', '.join(content)}")
+    return state_type(*values)
 
 
 @cache
-def _field_codecs(state_type: Any) -> tuple[tuple[str, _Write, _Read], ...]:
+def _fields_of(state_type: Any) -> tuple[_Field, ...]:
     hints = get_type_hints(state_type)
-    return tuple((field.name, *_codec_of(hints[field.name])) for field in fields(state_type))
+    return tuple(_field(field.name, hints[field.name]) for field in fields(state_type))
+
+
+def _field(name: str, hint: Any) -> _Field:
+    if get_origin(hint) in (UnionType, Union):
+        (inner,) = (member for member in get_args(hint) if member is not NoneType)
+        return _Field(name, *_codec_of(inner), optional=True)
+    return _Field(name, *_codec_of(hint), optional=False)
 
 
 def _codec_of(hint: Any) -> tuple[_Write, _Read]:
     if hint in _PLAIN:
         return _PLAIN[hint]
-    if get_origin(hint) in (UnionType, Union):
-        (inner,) = (member for member in get_args(hint) if member is not NoneType)
-        return _codec_of(inner)
     if get_origin(hint) is tuple:
         return _tuple_codec(get_args(hint))
     raise TypeError(f"a state cannot hold {hint}")
@@ -155,11 +175,12 @@ def decode_iterate(content: Content, arithmetic: Arithmetic) -> Iterate:
         raw = content.get("raw")
         account = content.get("account")
         limited = content.get("limited", ())
+        x = decode(content["x"])
         return Iterate(
             _read_whole(content["k"], decode),
-            decode(content["x"]),
+            x,
             decode(content["f"]) if failure is None else _decode_failure(failure),
-            None if raw is None else decode(raw),
+            None if raw is None else x if raw == content["x"] else decode(raw),
             None if account is None else _decode_account(account, decode),
             tuple([Limited(stage, decode(before), decode(after)) for stage, before, after in limited]),
             _read_text(content.get("put", ""), decode),

@@ -38,7 +38,7 @@ from surefoot.methods.plan_check import check_plan
 from surefoot.methods.preparation import prepare
 from surefoot.methods.rounding import same_bits
 from surefoot.methods.settings import read_number
-from surefoot.methods.stopping import Stride, exact_zero, read_tests, sides, verdict
+from surefoot.methods.stopping import Stride, exact_zero, read_tolerances, sides, verdict
 from surefoot.methods.trial import Landing, land
 from surefoot.methods.watched import Watched
 
@@ -69,7 +69,7 @@ class Stepper:
         self._arithmetic, self.readings = prepared.arithmetic, prepared.readings
         self._meter = Meter(prepared.function, stop)
         self._limits = read_limits(plan.control, self._arithmetic)
-        self._tests = read_tests(plan.stop, self._arithmetic)
+        self._tolerances = read_tolerances(plan.stop, self._arithmetic)
         self._own_test = OwnTest(plan.stop.test, checked, self._method, prepared.function) if plan.stop.test else None
         self._range = self._read_range()
         self._endings = Endings(self._arithmetic, checked.problem.unknown)
@@ -218,7 +218,7 @@ class Stepper:
             return ending
         if self._plan.stop.cap_is_success:
             return self._endings.cap_as_success(steps)
-        return self._endings.step_limit(steps, sides(self._arithmetic, self._tests, stride))
+        return self._endings.step_limit(steps, sides(self._arithmetic, self._tolerances, stride))
 
     def _tested(self, stride: Stride, state: State, steps: int, functions: Functions) -> Ending | None:
         """Converged by a test of the plan, or without progress: no test fired and the iterate repeats."""
@@ -235,7 +235,7 @@ class Stepper:
     def _verdict(self, stride: Stride, state: State, steps: int, functions: Functions) -> Verdict | None:
         if self._own_test is not None:
             return self._own_test.verdict(stride, state, steps, functions)
-        return verdict(self._arithmetic, self._tests, stride)
+        return verdict(self._arithmetic, self._tolerances, stride)
 
     def _waits_for_a_count(self) -> bool:
         """Whether the host code goes on with an iterate that repeats, since it ends by counting its steps."""

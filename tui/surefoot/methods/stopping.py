@@ -22,7 +22,7 @@ Side: TypeAlias = tuple[str, Real, Real]
 
 
 @dataclass(frozen=True, slots=True)
-class Tests:
+class Tolerances:
     """The tolerances of `Stop` in an arithmetic; None where a test is off."""
 
     x_absolute: Real | None
@@ -42,7 +42,7 @@ class Stride:
     origin: Iterate
 
 
-def read_tests(stop: Stop, arithmetic: Arithmetic) -> Tests:
+def read_tolerances(stop: Stop, arithmetic: Arithmetic) -> Tolerances:
     """The tests in numbers; an own condition switches them off. Raises PlanError when a literal cannot be read."""
     numbers = {
         key: None if text is None or stop.test else read_number(text, arithmetic, f"plan.stop.{key}")
@@ -52,7 +52,7 @@ def read_tests(stop: Stop, arithmetic: Arithmetic) -> Tests:
             ("residual", stop.residual),
         )
     }
-    return Tests(**numbers, relative_to=stop.relative_to, combine=stop.combine, raw=stop.step_tested == "raw")
+    return Tolerances(**numbers, relative_to=stop.relative_to, combine=stop.combine, raw=stop.step_tested == "raw")
 
 
 def exact_zero(arithmetic: Arithmetic, iterate: Iterate) -> Verdict | None:
@@ -62,29 +62,29 @@ def exact_zero(arithmetic: Arithmetic, iterate: Iterate) -> Verdict | None:
     return Verdict("exact_zero", (("exact_zero", abs(iterate.f), arithmetic.integer(0)),))
 
 
-def verdict(arithmetic: Arithmetic, tests: Tests, stride: Stride) -> Verdict | None:
+def verdict(arithmetic: Arithmetic, tolerances: Tolerances, stride: Stride) -> Verdict | None:
     """The verdict of the tests, None where they go on. "any": the first that holds, in the order of `sides`."""
-    pairs = sides(arithmetic, tests, stride)
+    pairs = sides(arithmetic, tolerances, stride)
     holding = [side for side in pairs if side[1] <= side[2]]
-    if tests.combine == "all":
-        return Verdict("all", pairs) if pairs and len(holding) == len(wanted(tests)) else None
+    if tolerances.combine == "all":
+        return Verdict("all", pairs) if pairs and len(holding) == len(wanted(tolerances)) else None
     return Verdict(holding[0][0], (holding[0],)) if holding else None
 
 
-def wanted(tests: Tests) -> tuple[str, ...]:
+def wanted(tolerances: Tolerances) -> tuple[str, ...]:
     """The tests that are on, in their order; with combine = "sum" the two of x are one, `sum`."""
-    on = [key for key in ("x_absolute", "x_relative", "residual") if getattr(tests, key) is not None]
-    if tests.combine == "sum" and on and on[0] != "residual":
+    on = [key for key in ("x_absolute", "x_relative", "residual") if getattr(tolerances, key) is not None]
+    if tolerances.combine == "sum" and on and on[0] != "residual":
         return ("sum", *(["residual"] if "residual" in on else []))
     return tuple(on)
 
 
-def sides(arithmetic: Arithmetic, tests: Tests, stride: Stride) -> tuple[Side, ...]:
+def sides(arithmetic: Arithmetic, tolerances: Tolerances, stride: Stride) -> tuple[Side, ...]:
     """(test, left, right) of each test that is on; those that cannot be made are left out: no step, or an overflow."""
     found: list[Side] = []
-    for name in wanted(tests):
+    for name in wanted(tolerances):
         try:
-            pair = _SIDES[name](arithmetic, tests, stride)
+            pair = _SIDES[name](arithmetic, tolerances, stride)
         except OperationFailed:
             continue
         if pair is not None:
@@ -92,7 +92,7 @@ def sides(arithmetic: Arithmetic, tests: Tests, stride: Stride) -> tuple[Side, .
     return tuple(found)
 
 
-def tested_step(arithmetic: Arithmetic, stride: Stride, raw: bool) -> Real | None:
+def step_under_test(arithmetic: Arithmetic, stride: Stride, raw: bool) -> Real | None:
     """dx as the tests see it, None where there is no iterate before. Raises OperationFailed when it overflows."""
     new, old = stride.new, stride.old
     if old is None:
@@ -112,32 +112,32 @@ def inequality(arithmetic: Arithmetic, side: Side) -> str:
     return f"{_LEFT[name]} = {left} {'<=' if side[1] <= side[2] else '>'} {right}"
 
 
-def _absolute(arithmetic: Arithmetic, tests: Tests, stride: Stride) -> tuple[Real, Real] | None:
-    dx = tested_step(arithmetic, stride, tests.raw)
-    return None if dx is None or tests.x_absolute is None else (abs(dx), tests.x_absolute)
+def _absolute(arithmetic: Arithmetic, tolerances: Tolerances, stride: Stride) -> tuple[Real, Real] | None:
+    dx = step_under_test(arithmetic, stride, tolerances.raw)
+    return None if dx is None or tolerances.x_absolute is None else (abs(dx), tolerances.x_absolute)
 
 
-def _relative(arithmetic: Arithmetic, tests: Tests, stride: Stride) -> tuple[Real, Real] | None:
-    dx = tested_step(arithmetic, stride, tests.raw)
-    if dx is None or tests.x_relative is None:
+def _relative(arithmetic: Arithmetic, tolerances: Tolerances, stride: Stride) -> tuple[Real, Real] | None:
+    dx = step_under_test(arithmetic, stride, tolerances.raw)
+    if dx is None or tolerances.x_relative is None:
         return None
-    return abs(dx), arithmetic.multiply(tests.x_relative, _size(tests.relative_to, stride))
+    return abs(dx), arithmetic.multiply(tolerances.x_relative, _size(tolerances.relative_to, stride))
 
 
-def _sum(arithmetic: Arithmetic, tests: Tests, stride: Stride) -> tuple[Real, Real] | None:
-    dx = tested_step(arithmetic, stride, tests.raw)
+def _sum(arithmetic: Arithmetic, tolerances: Tolerances, stride: Stride) -> tuple[Real, Real] | None:
+    dx = step_under_test(arithmetic, stride, tolerances.raw)
     if dx is None:
         return None
     zero = arithmetic.integer(0)
-    absolute = zero if tests.x_absolute is None else tests.x_absolute
-    relative = zero if tests.x_relative is None else tests.x_relative
-    return abs(dx), arithmetic.add(absolute, arithmetic.multiply(relative, _size(tests.relative_to, stride)))
+    absolute = zero if tolerances.x_absolute is None else tolerances.x_absolute
+    relative = zero if tolerances.x_relative is None else tolerances.x_relative
+    return abs(dx), arithmetic.add(absolute, arithmetic.multiply(relative, _size(tolerances.relative_to, stride)))
 
 
-def _residual(_: Arithmetic, tests: Tests, stride: Stride) -> tuple[Real, Real] | None:
-    if isinstance(stride.new.f, Failure) or tests.residual is None:
+def _residual(_: Arithmetic, tolerances: Tolerances, stride: Stride) -> tuple[Real, Real] | None:
+    if isinstance(stride.new.f, Failure) or tolerances.residual is None:
         return None
-    return abs(stride.new.f), tests.residual
+    return abs(stride.new.f), tolerances.residual
 
 
 def _size(relative_to: str, stride: Stride) -> Real:
@@ -148,7 +148,7 @@ def _size(relative_to: str, stride: Stride) -> Real:
     return sizes[relative_to]
 
 
-_SIDES: Mapping[str, Callable[[Arithmetic, Tests, Stride], tuple[Real, Real] | None]] = MappingProxyType(
+_SIDES: Mapping[str, Callable[[Arithmetic, Tolerances, Stride], tuple[Real, Real] | None]] = MappingProxyType(
     {"x_absolute": _absolute, "x_relative": _relative, "sum": _sum, "residual": _residual}
 )
 
