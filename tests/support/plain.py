@@ -11,7 +11,7 @@ import math
 import re
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from typing import Any, cast
+from typing import Any, NoReturn, cast
 
 import mpmath
 
@@ -178,6 +178,10 @@ _MP_FUNCTIONS: Mapping[str, Callable[..., Any]] = {
 }
 
 
+def _no_branch() -> NoReturn:
+    raise ValueError("no condition holds")
+
+
 def _correctly_rounded(function: Callable[..., Any]) -> Callable[..., float]:
     return lambda *arguments: float(function(*(MP.mpf(argument) for argument in arguments)))
 
@@ -185,6 +189,7 @@ def _correctly_rounded(function: Callable[..., Any]) -> Callable[..., float]:
 _FLOAT_NAMES: Mapping[str, Any] = {
     "N": float,
     "pi": math.pi,
+    "no_branch": _no_branch,
     **{name: getattr(math, name) for name in ("sin", "cos", "tan", "atan", "sinh", "cosh", "tanh", "exp", "log10")},
     "ln": math.log,
     "sqrt": math.sqrt,
@@ -198,6 +203,7 @@ _FLOAT_NAMES: Mapping[str, Any] = {
 _MP_NAMES: Mapping[str, Any] = {
     "N": lambda text: MP.mpf(float(text)),
     "pi": MP.mpf(math.pi),
+    "no_branch": _no_branch,
     "abs": abs,
     "sign": lambda x: MP.mpf(_sign(x)),
     **_MP_FUNCTIONS,
@@ -205,6 +211,7 @@ _MP_NAMES: Mapping[str, Any] = {
 _ROUNDED_NAMES: Mapping[str, Any] = {
     "N": lambda text: Rounded(MP.mpf(float(text))),
     "pi": Rounded(MP.mpf(math.pi)),
+    "no_branch": _no_branch,
     "abs": _absolute,
     "sign": lambda x: Rounded(MP.mpf(_sign(x.value))),
     **{name: _through(function) for name, function in _MP_FUNCTIONS.items()},
@@ -225,8 +232,10 @@ def _conditional(branches: str) -> str:
     parts = [branch.split(":", 1) for branch in branches.split(";")]
     text = ""
     for condition, value in parts:
-        text += f"({value})" if condition.strip() == "otherwise" else f"({value}) if ({condition}) else "
-    return f"({text})"
+        if condition.strip() == "otherwise":
+            return f"({text}({value}))"
+        text += f"({value}) if ({condition}) else "
+    return f"({text}no_branch())"
 
 
 def _split_equation(equation: str) -> tuple[str, str, str]:
