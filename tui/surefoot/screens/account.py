@@ -49,7 +49,7 @@ class _Words:
         return significant(self._arithmetic.encode(x), digits)
 
     def amount(self, x: float) -> str:
-        return with_unit(short(self._arithmetic.encode(x)), self.unit)
+        return with_unit(self.number(x, 3), self.unit)
 
     def x(self, x: float) -> str:
         return f"{self.name} = {with_unit(self.number(x, 9), self.unit)}"

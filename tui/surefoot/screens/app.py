@@ -72,6 +72,7 @@ class SurefootApp(App[int], inherit_bindings=False):
         self.plan_table: Mapping[str, object] | None = None  # [plan] and [arithmetic] of the problem file in hand
         self.arithmetic = "binary64"
         self._sampler: Sampler | None = None
+        self.fault: Exception | None = None
         self._stop = threading.Event()
 
     # -- beginning and ending ---------------------------------------------------------------------------------------
@@ -95,6 +96,11 @@ class SurefootApp(App[int], inherit_bindings=False):
         self._stop.set()
         if self.session is not None:
             self.session.close()
+
+    def _handle_exception(self, error: Exception) -> None:
+        """A fault of ours ends the program without a page of code: whoever ran it reports the fault."""
+        self.fault = error
+        self.exit(3)
 
     def leave(self) -> None:
         """End the program. All that was done is on disk; half-typed text goes into the draft."""
@@ -290,6 +296,7 @@ def run_app(
 
     Raises:
         SurefootError: there is no terminal to run on.
+        Exception: a fault of the program itself, after the terminal was given back.
     """
     if not (os.isatty(0) and os.isatty(2)):
         raise SurefootError("the screens need a terminal on standard input and standard error; see surefoot --help")
@@ -304,4 +311,6 @@ def run_app(
         if stream is not None and hasattr(stream, "reconfigure"):
             stream.reconfigure(encoding="utf-8", errors="replace")
     result = app.run(mouse=False)
+    if app.fault is not None:
+        raise app.fault
     return result if result is not None else int(app.return_code or 0)

@@ -36,7 +36,8 @@ def _theme(name: str, *, dark: bool, ground: str, ink: str, line: str, accent: s
         boost=ground,
         dark=dark,
         ansi=native,
-        variables={"line": line, "input-selection-background": accent, "block-cursor-background": ink},
+        variables=({"ansi-background": ground, "ansi-foreground": ink} if native else {})
+        | {"line": line, "input-selection-background": accent, "block-cursor-background": ink},
     )
 
 

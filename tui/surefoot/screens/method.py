@@ -22,6 +22,7 @@ from surefoot.screens.widgets.lines import Lines
 from surefoot.session.commands import BeginRun, BeginVariant
 
 _LIST_ROWS = 7
+_PLAN_CELLS = 46
 
 
 class MethodRoom(Room):
@@ -86,6 +87,7 @@ class MethodRoom(Room):
 
     def draw(self) -> None:
         methods = self.query_one("#methods", Lines)
+        self.query_one("#plan-side").styles.width = _PLAN_CELLS
         methods.styles.height = min(len(METHODS) + 2, _LIST_ROWS)
         methods.show(self._method_lines(methods.size.width))
         plan = self.query_one("#plan", Lines)
@@ -97,7 +99,7 @@ class MethodRoom(Room):
         self._draw_picture()
 
     def _method_lines(self, width: int) -> list[Text]:
-        head = self.styled(f" {'method':<24}{'starts':>6}{'order':>7}{'calls':>6}", "quiet")
+        head = self.styled(f" {'method':<24}{'starts':>7}{'order':>6}{'calls':>6}", "quiet")
         rows = _LIST_ROWS - 2
         codes = list(METHODS)
         here = self.at if self.in_methods else codes.index(self.form.method)
@@ -106,7 +108,7 @@ class MethodRoom(Room):
         for index in range(first, min(first + rows, len(codes))):
             traits = METHODS[codes[index]].traits
             mark = ">" if codes[index] == self.form.method else " "
-            text = f"{mark}{traits.code:<24}{traits.starts:>6}{_order(traits):>7}{sum(traits.evaluations):>6}"
+            text = f"{mark}{traits.code:<24}{traits.starts:>7}{_order(traits):>6}{sum(traits.evaluations):>6}"
             under_cursor = self.in_methods and index == self.at
             lines.append(self.styled(text[:width], "here") if under_cursor else Text(text[:width]))
         lines.append(self.styled(self.surefoot.rule(max(width - 1, 0)), "quiet"))
@@ -243,7 +245,7 @@ class MethodRoom(Room):
 
 
 def _order(traits: Traits) -> str:
-    return f"{traits.order:.4g}" if traits.order is not None else "-"
+    return f"{traits.order:.3g}" if traits.order is not None else "-"
 
 
 def _number(text: str) -> float | None:

@@ -166,6 +166,7 @@ def form_of_plan(plan: Plan) -> PlanForm:
     table = dict(plan_to_table(plan))
     form = form_of_table(table, plan.arithmetic)
     defaults = {f"stop.{key}": _shown(getattr(Stop(), key)) for key in _STOP}
+    defaults["max_steps"] = str(Plan.__dataclass_fields__["max_steps"].default)
     defaults |= {f"control.{key}": _shown(getattr(Control(), key)) for key in _CONTROL}
     kept = {key: value for key, value in form.values.items() if defaults.get(key) != value}
     return replace(form, values=kept)

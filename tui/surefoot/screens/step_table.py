@@ -58,7 +58,7 @@ def table_lines(run: Run, window: Window, width: int, rows: int) -> list[tuple[s
     first = max(len(window.iterates) - rows, 0)
     numbers = [arithmetic.encode(iterate.x) for iterate in window.iterates]
     x_texts = iterate_column(numbers[first:], size, numbers[first - 1] if first else None)
-    heading = f"{'k':>4}  {(problem.unknown + unit)[:size]:<{size}} {'f':<10} {'d' + problem.unknown:<10} {'order':>5}"
+    heading = f"{'k':>4}  {(problem.unknown + unit)[:size]:<{size}} {'f':<9} {'d' + problem.unknown:<9} order"
     if wide:
         heading += f" {'ratio':>8} {'d' + problem.unknown + '/' + problem.unknown:>10}"
     lines = [(heading[:width], False)]
@@ -66,7 +66,7 @@ def table_lines(run: Run, window: Window, width: int, rows: int) -> list[tuple[s
         iterate, measure = window.iterates[index], window.measures[index]
         residual = "no value" if isinstance(iterate.f, Failure) else short(arithmetic.encode(iterate.f))
         step = short(arithmetic.encode(measure.dx), 2) if measure.dx is not None else ""
-        row = f"{iterate.k:>4}  {x_texts[index - first]} {residual:<10} {step:<9}{_flag(iterate)}"
+        row = f"{iterate.k:>4}  {x_texts[index - first]} {residual:<9} {step:<8}{_flag(iterate)}"
         row += f" {order(measure.order):>5}"
         if wide:
             relative = short(arithmetic.encode(measure.relative_dx), 2) if measure.relative_dx is not None else ""
@@ -81,7 +81,11 @@ def _flag(iterate: Iterate) -> str:
 
 
 def landing_lines(rows: Sequence[tuple[str, str, str, str]], width: int) -> list[str]:
-    """The table of trial steps from (method, x, |f|, words)."""
-    lines = [f"   {'method':<26}{'would land at':<24}{'|f| there':<11}"]
-    lines += [f"   {method:<26}{x:<24}{residual:<11}{words}" for method, x, residual, words in rows]
+    """The table of trial steps from (method, x, |f|, why it cannot step or f has no value)."""
+    lines = ["", f"   {'method':<26}{'would land at':<20}|f| there", ""]
+    for method, x, residual, words in rows:
+        if words and not residual:
+            lines.append(f"   {method:<26}{x + '  ' if x else ''}{words}")
+        else:
+            lines.append(f"   {method:<26}{x:<20}{residual}")
     return [line[:width] for line in lines]

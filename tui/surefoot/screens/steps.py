@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Sequence
 from textwrap import wrap
 from typing import ClassVar
 
@@ -14,6 +14,7 @@ from textual.containers import Horizontal
 from surefoot.equation.results import Failure, Real
 from surefoot.errors import Refused, SurefootError
 from surefoot.figures.numbers import short, significant
+from surefoot.methods.trial import Landing
 from surefoot.screens.account import account_words
 from surefoot.screens.commands import bindings_of
 from surefoot.screens.dialogs import Ask, Choose
@@ -59,7 +60,7 @@ class StepsRoom(Room):
         run = self.run
         if run is None:
             return "no run yet", ""
-        starts = ", ".join(significant(text, 6) for text in run.plan.start)
+        starts = ", ".join(_start_words(text) for text in run.plan.start)
         arithmetic = "" if run.plan.arithmetic == "binary64" else f", {run.plan.arithmetic}"
         left = f"{run.plan.method} from {run.stated.problem.unknown} = {starts}{arithmetic}"
         if run.parent is not None:
@@ -87,9 +88,16 @@ class StepsRoom(Room):
         height = max(self.size.height - 4 - self.foot_lines - 2, 1)
         window = window_of(run, self.behind, height - 1)
         width = (_WIDE_TABLE_CELLS if wide else _TABLE_CELLS) - 1
-        rows = table_lines(run, window, width, height - 1)
-        log.show([self.styled(text, "here") if at else Text(text) for text, at in rows])
+        rows = table_lines(run, window, width - 2, height - 1)
+        lines = [self._row(text, at, width - 2) for text, at in rows]
+        log.show(lines + [self._row("", False, width - 2)] * (height - len(lines)))
         self._draw_picture(picture, run, window, self.size.width - width - 1, height)
+
+    def _row(self, text: str, at: bool, width: int) -> Text:
+        """One line of the table, and the light line that parts it from the picture."""
+        row = self.styled(text, "here") if at else Text(text)
+        parting = self.styled(self.surefoot.characters.separator, "quiet")
+        return Text.assemble(row, " " * (width - len(text) + 1), parting)
 
     def _draw_picture(self, view: Lines, run: Run, window: Window, width: int, height: int) -> None:
         if self.convergence:
@@ -160,19 +168,22 @@ class StepsRoom(Room):
         if self.landings is not None or run is None or session is None:
             self.landings = None
             return
-        rows = []
         try:
             landings = session.trial()
         except SurefootError as error:
             self.say(str(error), "alert")
             return
+        self.landings = [*landing_lines(self._landing_rows(run, landings), self.size.width - 1), "", "   t goes back"]
+
+    def _landing_rows(self, run: Run, landings: Sequence[Landing]) -> list[tuple[str, str, str, str]]:
+        rows = []
         for landing in landings:
-            x = significant(record_text(run, landing.x), 12) if landing.x is not None else "-"
-            residual = "-"
+            x = significant(record_text(run, landing.x), 12) if landing.x is not None else ""
+            residual = ""
             if landing.f is not None and not isinstance(landing.f, Failure):
                 residual = short(record_text(run, abs(landing.f))).lstrip("+")
             rows.append((landing.code, x, residual, landing.why or _no_value(landing.f)))
-        self.landings = ["", *landing_lines(rows, self.size.width - 1), "", "   t goes back to the steps"]
+        return rows
 
     def do_picture(self) -> None:
         self.convergence = not self.convergence
@@ -224,6 +235,11 @@ class StepsRoom(Room):
                 self.surefoot.perform(Abandon(reason))
 
         self.app.push_screen(Ask("Why is this run abandoned?", check=_reason_fault), reasoned)
+
+
+def _start_words(text: str) -> str:
+    """A start as typed; the exact bits of a variant's start as a short decimal."""
+    return significant(float.fromhex(text), 9) if "0x" in text else text
 
 
 def _no_value(f: Real | Failure | None) -> str:
