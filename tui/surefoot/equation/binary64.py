@@ -123,19 +123,24 @@ def _finite(value: float) -> float:
 
 
 def _single(text: str, value: float) -> float:
-    """The binary32 nearest to a literal whose nearest binary64 is `value`. Raises OverflowError.
+    """The binary32 nearest to a literal whose nearest binary64 is `value`; infinite beyond the range.
 
     Where `value` lies midway between two binary32 numbers, rounding it again would lose which side the literal was on.
     """
-    above, below = math.nextafter(value, math.inf), math.nextafter(value, -math.inf)
-    if math.isfinite(value) and _rounded_to_single(above) != _rounded_to_single(below) and not is_hexadecimal(text):
+    next_above, next_below = math.nextafter(value, math.inf), math.nextafter(value, -math.inf)
+    above, below = _rounded_to_single(next_above), _rounded_to_single(next_below)
+    midway = above != below and above - value == value - below
+    if midway and not is_hexadecimal(text):
         literal, middle = Fraction(text), Fraction(value)
-        value = above if literal > middle else below if literal < middle else value
+        value = next_above if literal > middle else next_below if literal < middle else value
     return _rounded_to_single(value)
 
 
 def _rounded_to_single(value: float) -> float:
-    rounded: float = struct.unpack("<f", struct.pack("<f", value))[0]
+    try:
+        rounded: float = struct.unpack("<f", struct.pack("<f", value))[0]
+    except OverflowError:
+        return math.copysign(math.inf, value)
     return rounded
 
 
