@@ -166,11 +166,13 @@ class _Compiler:
             return two
 
         def several(values: Values) -> Real:
-            arguments = tuple([part(values) for part in parts])
+            arguments: list[Real] = []
+            for part in parts:  # a comprehension would double the depth of the call
+                arguments.append(part(values))
             try:
                 return operation(*arguments)
             except OperationFailed as failed:
-                self._fail(node, failed.kind, arguments)
+                self._fail(node, failed.kind, tuple(arguments))
 
         return several
 
