@@ -15,6 +15,7 @@ MARKS = [
     "current",
     "base",
     "root",
+    "bound",
     "pole",
     "bracket_low",
     "bracket_high",
@@ -38,8 +39,9 @@ def test_every_glyph_takes_one_cell(characters: Characters) -> None:
 
 @pytest.mark.parametrize("characters", [UNICODE, ASCII])
 def test_marks_that_can_meet_in_a_picture_differ(characters: Characters) -> None:
-    kinds = [kind for kind in MARKS if kind != "base"]  # the base of a step is the previous iterate, seen on the curve
+    kinds = [kind for kind in MARKS if kind not in ("base", "bound")]
     assert len({characters.mark(kind) for kind in kinds}) == len(kinds)
+    # The base of a step is the previous iterate seen on the curve; a pole is a broken line, in ASCII by its rows.
     assert characters.mark("base") == characters.mark("previous")
 
 

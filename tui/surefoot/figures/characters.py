@@ -65,7 +65,8 @@ _MARKS: Final = {
     "current": ("o", "o"),
     "base": ("x", "x"),
     "root": ("*", "*"),
-    "pole": ("╎", ":"),
+    "bound": ("│", "|"),
+    "pole": ("╎", "|"),
     "bracket_low": ("[", "["),
     "bracket_high": ("]", "]"),
     "exact_zero": ("0", "0"),
@@ -94,7 +95,7 @@ class Characters:
 
     @property
     def vertical(self) -> str:
-        """A vertical line between columns; also a bound in a picture."""
+        """A vertical line between columns."""
         return "│" if self.unicode else "|"
 
     @property
@@ -121,9 +122,9 @@ class Characters:
         """The glyph of a mark in a picture.
 
         Args:
-            kind: a name (`iterate`, `previous`, `current`, `base`, `root`, `pole`, `bracket_low`, `bracket_high`,
-                `exact_zero`, `no_value`, `off_left`, `off_right`, `off_top`, `off_bottom`), or one printable ASCII
-                character, which stands for itself. Anything else gives `?`.
+            kind: a name (`iterate`, `previous`, `current`, `base`, `root`, `bound`, `pole`, `bracket_low`,
+                `bracket_high`, `exact_zero`, `no_value`, `off_left`, `off_right`, `off_top`, `off_bottom`), or one
+                printable ASCII character, which stands for itself. Anything else gives `?`.
         """
         pair = _MARKS.get(kind)
         if pair is not None:

@@ -1,0 +1,91 @@
+"""What a step took for true, as lines and marks: tangent, chord, bracket, parabola."""
+
+from __future__ import annotations
+
+import math
+from collections.abc import Sequence
+from dataclasses import dataclass
+from itertools import pairwise
+from typing import Final, Literal, TypeAlias
+
+from surefoot.figures.picture import Mark, Segment, place
+
+Shape: TypeAlias = Literal["tangent", "chord", "bracket", "cobweb", "parabola"]
+Point: TypeAlias = tuple[float, float | None]
+
+_PIECES: Final = 24
+_MEETS_ZERO: Final = 1e-3
+
+
+@dataclass(frozen=True, slots=True)
+class StepShape:
+    """What a step took for true, as drawn.
+
+    Attributes:
+        shape: tangent, chord, bracket, cobweb or parabola.
+        points: the points it rests on (x, f), in the order of the method's definition.
+        landing: where the line meets zero: what the rule itself proposed, before any step control; None if unknown.
+        slope: of a tangent, where there is no landing.
+    """
+
+    shape: Shape
+    points: tuple[Point, ...]
+    landing: float | None = None
+    slope: float | None = None
+
+
+def base_marks(step: StepShape) -> list[Mark]:
+    """The points that the step rests on: the ends of a bracket on the zero line, others on the curve."""
+    if step.shape == "bracket" and len(step.points) > 1:
+        low, high = sorted(x for x, _ in step.points[:2])
+        return [Mark(low, 0.0, "bracket_low", keep=False), Mark(high, 0.0, "bracket_high", keep=False)]
+    return [Mark(x, y, "base") for x, y in step.points if y is not None and math.isfinite(place(y))]
+
+
+def step_segments(step: StepShape) -> tuple[Segment, ...]:
+    """The straight lines, or pieces of the parabola, of a step."""
+    points = [(place(x), place(y)) for x, y in step.points]
+    points = [point for point in points if all(map(math.isfinite, point))]
+    if not points or step.shape in ("bracket", "cobweb"):
+        return ()
+    if step.shape == "parabola" and len(points) > 2:
+        return _parabola(points[:3], step.landing)
+    ends = points[:2] if step.shape == "chord" else points[:1]
+    if step.landing is not None:
+        ends.append((place(step.landing), 0.0))
+    elif step.slope and len(ends) == 1:
+        ends.append((ends[0][0] - ends[0][1] / step.slope, 0.0))
+    return tuple(Segment(*a, *b) for a, b in pairwise(ends))
+
+
+def _parabola(points: Sequence[tuple[float, float]], landing: float | None) -> tuple[Segment, ...]:
+    """The parabola through three points: f over x, or x over f where only that one meets zero at the landing."""
+    (a, fa), (b, fb), (c, fc) = points
+    if len({a, b, c}) == 3 and (landing is None or _is_root(points, landing)):
+        ends = [a, b, c] + ([] if landing is None else [landing])
+        path = [(x, _through(points, x)) for x in _spread(ends)]
+    elif len({fa, fb, fc}) == 3:
+        turned = [(fa, a), (fb, b), (fc, c)]
+        path = [(_through(turned, f), f) for f in _spread([fa, fb, fc, 0.0])]
+    else:
+        return ()
+    return tuple(Segment(*start, *end) for start, end in pairwise(path))
+
+
+def _is_root(points: Sequence[tuple[float, float]], landing: float) -> bool:
+    return abs(_through(points, landing)) <= _MEETS_ZERO * max(abs(f) for _, f in points)
+
+
+def _through(points: Sequence[tuple[float, float]], at: float) -> float:
+    """The parabola through three points with different abscissae (Lagrange's form)."""
+    (a, fa), (b, fb), (c, fc) = points
+    return (
+        fa * ((at - b) / (a - b)) * ((at - c) / (a - c))
+        + fb * ((at - a) / (b - a)) * ((at - c) / (b - c))
+        + fc * ((at - a) / (c - a)) * ((at - b) / (c - b))
+    )
+
+
+def _spread(ends: Sequence[float]) -> list[float]:
+    low, high = min(ends), max(ends)
+    return [low * (1 - n / _PIECES) + high * (n / _PIECES) for n in range(_PIECES + 1)]
