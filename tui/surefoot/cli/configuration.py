@@ -44,6 +44,14 @@ def read_configuration() -> Configuration:
     return _settings(read_text(str(path)), str(path))
 
 
+def sessions_folder(given: str | None, settings: Configuration) -> Path:
+    """Where sessions are kept: as given, else as the environment says, else as set, else by default."""
+    from surefoot.session.library import default_folder
+
+    set_here = None if os.environ.get("SUREFOOT_SESSIONS") else settings.sessions
+    return default_folder(given or set_here)
+
+
 def _settings(text: str, file: str) -> Configuration:
     import tomllib
 
