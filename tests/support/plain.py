@@ -73,6 +73,11 @@ class Formula:
         """In 200 bits, over the same binary64 literals and inputs."""
         return self._evaluator({**_MP_NAMES, **{name: MP.mpf(value) for name, value in self.inputs.items()}})
 
+    def decimal(self) -> Callable[[Any], Any]:
+        """In 200 bits, over the literals as the decimals that they are."""
+        inputs = {name: MP.mpf(value) for name, value in self.inputs.items()}
+        return self._evaluator({**_MP_NAMES, "N": MP.mpf, "pi": MP.pi, **inputs})
+
     def rounded(self) -> Callable[[float], Rounded]:
         """In 200 bits, with a first-order bound of the error that binary64 makes from the same x."""
         inputs = {name: Rounded(MP.mpf(value)) for name, value in self.inputs.items()}

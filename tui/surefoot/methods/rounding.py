@@ -13,12 +13,12 @@ _LONGEST_FIGURE = 24  # a binary64 in its shortest decimal form never needs more
 
 def sign(x: Real) -> int:
     """-1, 0 or 1; both zeros give 0."""
-    return (x > 0) - (x < 0)
+    return 1 if x > 0 else -1 if x < 0 else 0
 
 
 def same_bits(arithmetic: Arithmetic, a: Real, b: Real) -> bool:
     """Whether two numbers are the same to the bit, so that -0.0 differs from 0.0."""
-    return a == b and (a != 0 or arithmetic.encode(a) == arithmetic.encode(b))
+    return bool(a == b) and (a != 0 or arithmetic.encode(a) == arithmetic.encode(b))
 
 
 def half_sum(arithmetic: Arithmetic, a: Real, b: Real) -> Real:
