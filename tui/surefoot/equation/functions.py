@@ -142,7 +142,7 @@ def nearest(name: str, known: Iterable[str]) -> str:
     other = _ALSO_WRITTEN.get(folded, "")
     if other in candidates:
         return other
-    close = get_close_matches(name, candidates, n=1, cutoff=0.6)
+    close = get_close_matches(name, candidates, n=1, cutoff=0.6) if len(name) > 1 else []
     return close[0] if close else ""
 
 
