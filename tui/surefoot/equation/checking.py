@@ -24,7 +24,7 @@ from surefoot.errors import EquationError, ProblemError
 NameKind: TypeAlias = Literal["unknown", "input", "definition"]
 Parsed = TypeVar("Parsed", bound=Node)
 
-_LISTED = 12  # unknown names that one message lists
+_LISTED = 12  # names that one message lists
 
 
 @dataclass(frozen=True, slots=True)
@@ -220,7 +220,8 @@ def _refuse_disorder(trees: Mapping[str, Expression]) -> None:
     uses = {name: sorted(names_in(tree) & trees.keys(), key=place_of.__getitem__) for name, tree in trees.items()}
     circle = _circle(uses)
     if circle:
-        raise ProblemError(f"the definitions go round in a circle: {' -> '.join(circle)}", place=f"where.{circle[0]}")
+        shown = circle if len(circle) <= _LISTED else [*circle[: _LISTED - 1], "...", circle[-1]]
+        raise ProblemError(f"the definitions go round in a circle: {' -> '.join(shown)}", place=f"where.{circle[0]}")
     for name, used in uses.items():
         below = [other for other in used if place_of[other] > place_of[name]]
         if below:
