@@ -5,7 +5,6 @@ An entry knows nothing of what its content means; `surefoot.session.events` does
 
 from __future__ import annotations
 
-import hashlib
 import json
 import re
 from dataclasses import dataclass
@@ -21,7 +20,6 @@ _MEMBERS = frozenset({"n", "at", "by", "kind", "content", "prev", "hash"})
 _TIME = re.compile(r"\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d\.\d{3}Z")
 _KIND = re.compile(r"[a-z][a-z_]*")
 _HASH = re.compile(r"[0-9a-f]{64}")
-_HASH_MEMBER = b',"hash":"'
 
 
 @dataclass(frozen=True, slots=True)
@@ -44,12 +42,12 @@ def seal(n: int, at: str, by: str, kind: str, content: dict[str, Json], prev: st
         RecordError: the content holds what a record cannot hold.
     """
     body = {"n": n, "at": at, "by": by, "kind": kind, "content": content, "prev": prev}
-    _check_members({**body, "hash": NO_HASH}, n)
+    _check_forms({**body, "hash": NO_HASH}, n, _FORMS)
     unsigned = canonical(body)
     digest = sha256(unsigned)
     # Behind `kind` stand only n and prev, so this is the member itself and never text inside the content.
     place = unsigned.rindex(b',"kind":"')
-    line = unsigned[:place] + _HASH_MEMBER + digest.encode() + b'"' + unsigned[place:]
+    line = b'%s,"hash":"%s"%s' % (unsigned[:place], digest.encode(), unsigned[place:])
     return Entry(n, at, by, kind, content, prev, digest), line
 
 
@@ -62,45 +60,52 @@ def read_entry(line: bytes, n: int, prev: str, *, strict: bool = False) -> Entry
     Raises:
         RecordError: the line is not event `n` that follows the event with hash `prev`, as it was written.
     """
-    members = _parse(line, n)
-    _check_members(members, n)
+    seen = None if strict else quick_check(line, n, prev)
+    if seen is not None:
+        members = _parse(line, n, unique=False)
+        _check_forms(members, n, _AT)
+        return Entry(n, members["at"], members["by"], seen[0], members["content"], prev, seen[1])
+    members = _parse(line, n, unique=True)
+    _check_forms(members, n, _FORMS)
     if members["n"] != n:
         raise RecordError(f"this place holds event {members['n']}: events were removed, added or moved", event=n)
     if members["prev"] != prev:
         raise RecordError("does not follow the event before it: the chain of hashes is broken", event=n)
-    stored = members["hash"]
-    if strict or _digest_of_line(line, stored) != stored:
-        members = _parse(line, n, unique=True)
-        if _digest_of_members(members, n) != stored:
-            raise RecordError("was changed after it was written: its hash does not match", event=n)
-    return Entry(n, members["at"], members["by"], members["kind"], members["content"], prev, stored)
+    if _digest_of_members(members, n) != members["hash"]:
+        raise RecordError("was changed after it was written: its hash does not match", event=n)
+    return Entry(**members)
+
+
+def read_unchecked(line: bytes, n: int) -> Entry:
+    """The entry that a line holds, whatever its place and its hash, for looking at a record that is not whole.
+
+    Raises:
+        RecordError: the line does not have the form of an event.
+    """
+    members = _parse(line, n, unique=True)
+    _check_forms(members, n, _FORMS)
+    return Entry(**members)
 
 
 def quick_check(line: bytes, n: int, prev: str) -> tuple[str, str] | None:
-    """Kind and hash of a canonical line whose chain holds, read without parsing it; None when it must be parsed."""
-    match = _END.search(line, max(0, len(line) - _END_LENGTH))
-    if match is None or match.group(3) != str(n).encode() or match.group(4).decode() != prev:
+    """Kind and hash of a line whose hash is right as the line stands, read without parsing it; otherwise None.
+
+    What it calls the kind is only that when the line is an event.
+    """
+    end = b'","n":%d,"prev":"%s"}' % (n, prev.encode())
+    if not line.endswith(end):
         return None
-    stored = match.group(1).decode()
-    if _digest_of_line(line, stored) != stored:
+    behind = line.rfind(b',"kind":"')
+    hashed = line[max(0, behind - _HASH_LENGTH) : max(0, behind)]
+    if not (hashed.startswith(b',"hash":"') and hashed.endswith(b'"') and len(hashed) == _HASH_LENGTH):
         return None
-    return match.group(2).decode(), stored
+    stored = hashed[9:-1].decode("latin-1")
+    if sha256(line[: behind - _HASH_LENGTH] + line[behind:]) != stored:
+        return None
+    return line[behind + 9 : -len(end)].decode("latin-1"), stored
 
 
-_END = re.compile(
-    rb',"hash":"([0-9a-f]{64})","kind":"([a-z][a-z_]{0,40})","n":(0|[1-9][0-9]{0,15}),"prev":"([0-9a-f]{64})"\}\Z'
-)
-_END_LENGTH = 300  # more than the members of `_END` can take
-
-
-def _digest_of_line(line: bytes, stored: str) -> str:
-    """SHA-256 of the line without its hash member."""
-    head, found, rest = line.rpartition(_HASH_MEMBER)
-    if not found or rest[:65] != stored.encode() + b'"':
-        return ""
-    digest = hashlib.sha256(head)
-    digest.update(rest[65:])
-    return digest.hexdigest()
+_HASH_LENGTH = len(',"hash":""') + 64
 
 
 def _digest_of_members(members: dict[str, Json], n: int) -> str:
@@ -133,13 +138,17 @@ def parse_json(data: bytes, *, unique: bool) -> Json:
     Raises:
         ValueError: anything else, nesting without end included.
     """
+    text = data.decode("utf-8").lstrip()
     try:
-        return (_UNIQUE_DECODER if unique else _DECODER).decode(data.decode("utf-8"))
+        value, end = (_UNIQUE_DECODER if unique else _DECODER).raw_decode(text)
     except RecursionError as error:
         raise ValueError("the values are nested too deep") from error
+    if end < len(text) and text[end:].strip():
+        raise ValueError(f"something stands behind the value: {text[end : end + 24]!r}")
+    return value
 
 
-def _parse(line: bytes, n: int, *, unique: bool = False) -> dict[str, Any]:
+def _parse(line: bytes, n: int, *, unique: bool) -> dict[str, Any]:
     try:
         members = parse_json(line, unique=unique)
     except ValueError as error:  # of UTF-8, of JSON, and of whole numbers with thousands of digits
@@ -153,16 +162,19 @@ def _first_line(error: ValueError) -> str:
     return str(error).splitlines()[0][:120]
 
 
-def _check_members(members: dict[str, Any], n: int) -> None:
-    """Raise RecordError unless every member has the form that the record gives it."""
-    texts = (members["at"], members["by"], members["kind"], members["prev"], members["hash"])
-    if type(members["n"]) is not int or not all(isinstance(text, str) for text in texts):
+_AT = (("at", _TIME),)
+_FORMS = (*_AT, ("kind", _KIND), ("prev", _HASH), ("hash", _HASH))
+
+
+def _check_forms(members: dict[str, Any], n: int, forms: tuple[tuple[str, re.Pattern[str]], ...]) -> None:
+    """Raise RecordError unless every member has its type, and those of `forms` the form that the record gives them."""
+    if type(members["n"]) is not int or not isinstance(members["by"], str):
         raise RecordError("has a member of the wrong type", event=n)
     if not isinstance(members["content"], dict):
         raise RecordError("has content that is not an object", event=n)
     if not members["by"].strip():
         raise RecordError("does not say by whom it is", event=n)
-    forms = ((_TIME, "at"), (_KIND, "kind"), (_HASH, "prev"), (_HASH, "hash"))
-    for form, name in forms:
-        if not form.fullmatch(members[name]):
+    for name, form in forms:
+        text = members[name]
+        if not isinstance(text, str) or not form.fullmatch(text):
             raise RecordError(f"has a member {name!r} of the wrong form", event=n)

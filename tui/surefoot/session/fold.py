@@ -61,28 +61,50 @@ def apply(state: SessionState, event: Event) -> SessionState:
     """
     what = event.what
     try:
-        _check_order(state, event)
+        if event.n != state.events:
+            raise RecordError(f"stands where event {state.events} belongs")
+        if (event.n == 0) != (type(what) is SessionOpened):
+            raise RecordError(f"{event.kind} cannot stand here: event 0 opens the session, and only event 0")
         command = _COMMAND_OF.get(type(what))
-        if command is not None:
-            if type(what) is RunBegun and what.parent is not None:
-                command = BeginVariant
-            refused = refusal(state, command)
-            if refused is not None:
-                raise RecordError(f"{event.kind} is not allowed here: {refused.reason}")
+        if type(what) is RunBegun and what.parent is not None:
+            command = BeginVariant
+        refused = refusal(state, command) if command is not None else None
+        if refused is not None:
+            raise RecordError(f"{event.kind} is not allowed here: {refused.reason}")
         return _APPLY[type(what)](state, event, what)
     except RecordError as error:
         raise RecordError(error.message, event=event.n) from error
 
 
-def _check_order(state: SessionState, event: Event) -> None:
-    if event.n != state.events:
-        raise RecordError(f"stands where event {state.events} belongs")
-    if (event.n == 0) != isinstance(event.what, SessionOpened):
-        raise RecordError(f"{event.kind} cannot stand here: event 0 opens the session, and only event 0")
-
-
 def _on(state: SessionState, event: Event, **changes: Any) -> SessionState:
     return replace(state, events=event.n + 1, changed_at=event.at, by=event.by, **changes)
+
+
+def _with_run(state: SessionState, event: Event, undo: str, run: Run) -> SessionState:
+    """The state with a new value of the run in hand.
+
+    Every step comes here: written out, it takes a third of the time of `replace`.
+    """
+    if len(state.runs) == 1:
+        runs: tuple[Run, ...] = (run,)
+    else:
+        runs = tuple(run if other.number == run.number else other for other in state.runs)
+    return SessionState(
+        "stepping" if run.ending is None else "ended",
+        state.title,
+        state.problems,
+        runs,
+        state.hand,
+        state.notes,
+        state,
+        undo,
+        event.n + 1,
+        event.at,
+        event.by,
+        state.run_numbers,
+        state.problem_numbers,
+        state.environment,
+    )
 
 
 def _doing(state: SessionState, event: Event, undo: str, **changes: Any) -> SessionState:
@@ -169,15 +191,15 @@ def _stepped(state: SessionState, event: Event, what: StepTaken) -> SessionState
     if what.iterate is None:
         if what.ending is None or what.state is not None:
             raise RecordError("a step without an iterate must end the run, and leaves the method's state as it was")
-        return _doing(state, event, "the end of the run", **_with(state, _ended(run, what)))
+        return _with_run(state, event, "the end of the run", _ended(run, what))
     steps = run.steps + 1
-    return _doing(state, event, f"step {steps}", **_with(state, _going_on(run, what, what.iterate, steps)))
+    return _with_run(state, event, f"step {steps}", _going_on(run, what, what.iterate, steps))
 
 
 def _put(state: SessionState, event: Event, what: IteratePut) -> SessionState:
     run = _in_hand(state)
     undo = f"iterate {what.iterate.k}, put by hand"
-    return _doing(state, event, undo, **_with(state, _going_on(run, what, what.iterate, run.steps)))
+    return _with_run(state, event, undo, _going_on(run, what, what.iterate, run.steps))
 
 
 def _going_on(run: Run, what: StepTaken | IteratePut, iterate: Iterate, steps: int) -> Run:
@@ -210,7 +232,7 @@ def _abandoned(state: SessionState, event: Event, what: RunAbandoned) -> Session
     if not what.reason.strip():
         raise RecordError("a run is abandoned without a reason")
     ended = replace(run, ending=Ending("abandoned", None, what.reason))
-    return _doing(state, event, f"abandoning run {run.number}", **_with(state, ended))
+    return _with_run(state, event, f"abandoning run {run.number}", ended)
 
 
 def _withdrawn(state: SessionState, event: Event, what: Withdrawn) -> SessionState:
@@ -258,12 +280,6 @@ def _run(state: SessionState, number: int) -> Run:
         if run.number == number:
             return run
     raise RecordError(f"there is no run {number}")
-
-
-def _with(state: SessionState, run: Run) -> dict[str, Any]:
-    """The changes that a new value of a run makes to the state; the run is in hand."""
-    runs = tuple(run if other.number == run.number else other for other in state.runs)
-    return {"runs": runs, "phase": _phase(run)}
 
 
 def _phase(run: Run) -> Phase:

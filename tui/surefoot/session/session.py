@@ -40,7 +40,7 @@ from surefoot.session.fold import EMPTY
 from surefoot.session.library import new_name
 from surefoot.session.loading import load
 from surefoot.session.lock import Held, Holder, Lock, acquire, myself
-from surefoot.session.record import Record, reason
+from surefoot.session.record import Record, reason, torn_path
 from surefoot.session.solver import Solver, Stop
 from surefoot.session.state import Run, SessionState
 from surefoot.session.transitions import refusal
@@ -146,6 +146,8 @@ class Session:
             raise
         if holder is None:  # while another writes, a file that is cut at its end is no accident
             notices += loaded.notices
+        if record is not None and loaded.layout.tail:
+            notices.append(f"what a cut write left is kept in {torn_path(path).name}")
         return cls(
             path,
             loaded.state,

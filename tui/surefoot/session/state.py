@@ -158,4 +158,7 @@ class SessionState:
     @property
     def run(self) -> Run | None:
         """The run in hand."""
-        return next((run for run in self.runs if run.number == self.hand), None)
+        for run in self.runs:
+            if run.number == self.hand:
+                return run
+        return None

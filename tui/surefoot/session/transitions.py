@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping
+from collections.abc import Callable, Mapping
 from typing import TypeAlias
 
 from surefoot.errors import Refused
@@ -25,6 +25,7 @@ _No: TypeAlias = tuple[str, str]  # reason, hint
 _NO_PROBLEM: _No = ("no problem yet", "state the equation first")
 _NO_PLAN: _No = ("no plan yet", "choose a method and its starts first")
 _NO_RUN: _No = ("no run yet", "begin one first")
+_NO_OTHER_RUN: _No = ("there is no other run", "begin a new run or a variant first")
 _UNDER_WAY: _No = ("the run in hand is under way", "go on to its stop, abandon it or withdraw it first")
 _ENDED: _No = ("the run in hand has ended", "withdraw its last step, begin a variant or plan a new run")
 _ASSESSED: _No = ("the root is assessed", "withdraw the assessment first, or plan a new run")
@@ -95,15 +96,14 @@ TABLE: Mapping[Phase, Mapping[type[Command], _No | None]] = {
 
 def refusal(state: SessionState, command: type[Command]) -> Refused | None:
     """Why a command is not allowed in this state, None when it is."""
-    no = TABLE[state.phase][command] or _beside_the_phase(state, command)
+    no = TABLE[state.phase][command]
+    if no is None and command in _BESIDE_THE_PHASE:
+        no = _BESIDE_THE_PHASE[command](state)
     return Refused(*no) if no else None
 
 
-def _beside_the_phase(state: SessionState, command: type[Command]) -> _No | None:
-    if command is Withdraw and state.before is None:
-        return "nothing to withdraw", ""
-    if command is BeginVariant and not state.runs:
-        return _NO_RUN
-    if command is TakeUp and not any(run.number != state.hand for run in state.runs):
-        return "there is no other run", "begin a new run or a variant first"
-    return None
+_BESIDE_THE_PHASE: Mapping[type[Command], Callable[[SessionState], _No | None]] = {
+    Withdraw: lambda state: ("nothing to withdraw", "") if state.before is None else None,
+    BeginVariant: lambda state: None if state.runs else _NO_RUN,
+    TakeUp: lambda state: None if any(run.number != state.hand for run in state.runs) else _NO_OTHER_RUN,
+}
