@@ -54,7 +54,7 @@ def size_of_terms(checked: CheckedProblem, x: float) -> float:
 
 @pytest.mark.parametrize("code", sorted(PUBLISHED))
 def test_the_residual_at_published_roots_is_small_beside_its_terms(code: str) -> None:
-    """Within 1e-14 of its terms, and what it changes by itself over eight last places of x.
+    """Within 1e-13 of its terms, and what it changes by itself over eight last places of x.
 
     The latter speaks where a residual is one term, such as J0(x), or a term is ill-conditioned in x.
     """
@@ -66,8 +66,8 @@ def test_the_residual_at_published_roots_is_small_beside_its_terms(code: str) ->
         x = float(root["value"])
         shift = 4.0 * math.ulp(x)
         change = abs(function.value(x + shift) - function.value(x - shift))
-        assert abs(function.value(x)) <= 1e-14 * size_of_terms(checked, x) + change, x
-        assert change <= 1e-9 * size_of_terms(checked, x) or len(terms(checked.residual)) == 1, x
+        assert abs(function.value(x)) <= 1e-13 * size_of_terms(checked, x) + change, x
+        assert change <= 1e-8 * size_of_terms(checked, x) or len(terms(checked.residual)) == 1, x
 
 
 @pytest.mark.parametrize("code", sorted(EVERYTHING))
