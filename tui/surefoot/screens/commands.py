@@ -69,9 +69,18 @@ PLACES: Mapping[str, tuple[Key, ...]] = {
     "function": (
         Key("accept", ("a", "ctrl+s"), "a", "accept", "Accept the problem as it stands.", asked.StateProblem),
         Key("edit", ("enter", "i"), "enter", "type", "Go into the field that was last in hand.", asked.StateProblem),
-        Key("open", ("o",), "o", "open a file", "Take the problem from a problem file (.toml).", asked.StateProblem),
+        Key("open", ("o",), "o", "open a file", "Open a problem file (.toml) or a session (.json)."),
         Key("paste", ("p",), "p", "paste source", "Paste Fortran, C or Python lines.", asked.StateProblem),
-        Key("editor", ("e", "ctrl+o"), "e", "own editor", "Edit the problem file text in $VISUAL or $EDITOR."),
+        Key(
+            "editor",
+            ("e", "ctrl+o"),
+            "e",
+            "own editor",
+            "Edit the problem file text in $VISUAL or $EDITOR.",
+            asked.StateProblem,
+        ),
+        Key("read", ("r",), "r", "as read", "Show all texts as they were read, and the derivatives.", line=False),
+        Key("discard", ("x",), "x", "throw away", "Throw away what is typed and not accepted.", line=False),
         Key("withdraw", ("backspace",), "backspace", "withdraw", "Take back what was done last.", asked.Withdraw),
     ),
     "method": (

@@ -5,19 +5,25 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 from textwrap import wrap
+from typing import TypeAlias
 
+from surefoot.equation.functions import CONSTANTS, FUNCTIONS
 from surefoot.equation.parser import parse_expression
 from surefoot.equation.problem import Derivative
 from surefoot.equation.tree import Equation, Expression
 from surefoot.errors import EquationError
 from surefoot.figures.characters import Characters
-from surefoot.screens.form import Fault, Form
+from surefoot.screens.form import Form
 from surefoot.screens.form_reading import Reading
 from surefoot.screens.looks import Kind
 from surefoot.screens.typeset import broken, typeset
+from surefoot.session.state import StatedProblem
 
 GUTTER = 10
 """Cells at the left, where the name of what stands beside is written."""
+
+
+_NO_LIMIT = 10_000
 
 
 @dataclass(frozen=True, slots=True)
@@ -42,11 +48,71 @@ class Space:
         return max(self.width - GUTTER - 1, 10)
 
 
-def fault_lines(fault: Fault, form: Form, space: Space) -> list[Said]:
+Place: TypeAlias = tuple[str, int, int] | None
+"""Field, line and column of the cursor, from 1; None while it is in no field."""
+
+
+def short_echo(reading: Reading, form: Form, place: Place, accepted: StatedProblem | None, space: Space) -> list[Said]:
+    """What is wrong or missing first, then what stands under the cursor as it was read, then the rest while it fits.
+
+    Args:
+        accepted: the problem in force, when the form shows it unchanged.
+    """
+    if form.empty:
+        return _language_lines(space)[: space.height]
+    blocks = [_fault_block(reading, form, space), _name_lines(reading, space)]
+    left = space.height - sum(map(len, blocks))
+    trees = _trees(reading, place)
+    blocks += [_tree_lines(label, tree, space, left) for label, tree in trees[:1]]
+    left -= len(blocks[-1])
+    if accepted is not None and accepted.derivatives:
+        blocks.append(_derivative_lines(accepted, accepted.derivatives[0], space, left))
+    for label, tree in trees[1:]:
+        left = space.height - sum(map(len, blocks))
+        block = _tree_lines(label, tree, space, left)
+        blocks += [block] if len(block) <= left else []
+    return _fitted([line for block in blocks for line in block], space.height)
+
+
+def full_echo(
+    reading: Reading, form: Form, accepted: StatedProblem | None, readings: Sequence[str], space: Space
+) -> list[Said]:
+    """Everything: errors, all texts as they were read, derivatives, the readings of a paste, what the form hides."""
+    blocks = [_fault_block(reading, form, space), _name_lines(reading, space)]
+    blocks += [_tree_lines(label, tree, space, _NO_LIMIT) for label, tree in _trees(reading, None)]
+    if accepted is not None:
+        blocks += [_derivative_lines(accepted, each, space, _NO_LIMIT) for each in accepted.derivatives]
+    words = [line for each in readings for line in wrap(space.characters.text(each), space.room)]
+    blocks.append([Said(line) for line in _labelled("from paste", words)])
+    return [line for block in blocks if block for line in (*block, Said(""))]
+
+
+def _trees(reading: Reading, place: Place) -> list[tuple[str, Equation | Expression]]:
+    """What can be shown as read, with its name; first what stands under the cursor, else the equation."""
+    definitions = [(f"  {name}", tree) for _, name, tree in reading.definitions]
+    equation = [("read as", reading.equation)] if reading.equation is not None else []
+    if place is not None and place[0] == "where":
+        at = sum(line <= place[1] for line, _, _ in reading.definitions) - 1
+        if at >= 0:
+            return [definitions[at], *equation, *definitions[:at], *definitions[at + 1 :]]
+    return [*equation, *definitions]
+
+
+def _language_lines(space: Space) -> list[Said]:
+    """What the language accepts, for an empty form."""
+    words = f"{' '.join(FUNCTIONS)} {' '.join(CONSTANTS)} piecewise(condition: value; otherwise: value)"
+    lines = ["left = right, or an expression that is to be zero:  + - * / ^ ( )", *wrap(words, space.room)]
+    return [Said(line, "quiet") for line in _labelled("language", lines)]
+
+
+def _fault_block(reading: Reading, form: Form, space: Space) -> list[Said]:
     """The first error: in words, then the line it stands in with a mark under its place."""
+    fault = reading.fault
+    if fault is None or fault.missing in reading.nameless or (fault.field == "unknown" and reading.proposed):
+        return []  # the names without a value say it all
     lines = [Said(line, "alert") for line in _labelled("open", wrap(space.characters.text(str(fault)), space.room))]
     text = getattr(form, fault.field).split("\n")[fault.line - 1 :] if fault.field else []
-    if text and text[0].strip():
+    if text and text[0].strip() and fault.column:
         lines += [Said(" " * GUTTER + line) for line in marked(text[0], fault.column, space)]
     return lines
 
@@ -66,7 +132,7 @@ def marked(line: str, column: int, space: Space) -> list[str]:
     return [shown, " " * (column - 1 - first) + "^"]
 
 
-def name_lines(reading: Reading, space: Space) -> list[Said]:
+def _name_lines(reading: Reading, space: Space) -> list[Said]:
     """The names that have neither a value nor a definition."""
     if not reading.nameless:
         return []
@@ -76,16 +142,17 @@ def name_lines(reading: Reading, space: Space) -> list[Said]:
     return [Said(line) for line in _labelled("no value", wrap(space.characters.text(names), space.room))]
 
 
-def tree_lines(label: str, tree: Equation | Expression, space: Space, height: int) -> list[Said]:
+def _tree_lines(label: str, tree: Equation | Expression, space: Space, height: int) -> list[Said]:
     """An equation or expression as it was read; its name stands beside the line on which it is based."""
     box = typeset(tree, space.room, height, space.characters)
     return [Said(line.rstrip()) for line in _labelled(label, box.lines, at=box.base)]
 
 
-def derivative_lines(unknown: str, derivative: Derivative, space: Space, height: int) -> list[Said]:
+def _derivative_lines(stated: StatedProblem, derivative: Derivative, space: Space, height: int) -> list[Said]:
     """A derivative as it was recorded, with the definitions that it brings along and its gaps."""
-    order = "" if derivative.order == 1 else f"^{derivative.order}"
-    said = _recorded(f"d{order}f/d{unknown}{order}", derivative.text, space, height)
+    order, unknown = "" if derivative.order == 1 else f"^{derivative.order}", stated.problem.unknown
+    label = f"d{order}{'' if unknown == 'f' else 'f'}/d{unknown}{order}"
+    said = _recorded(label, derivative.text, space, height)
     for definition in derivative.where:
         said += _recorded(f"  {definition.name}", definition.text, space, height)
     for gap in derivative.gaps:
@@ -95,17 +162,16 @@ def derivative_lines(unknown: str, derivative: Derivative, space: Space, height:
 
 def _recorded(label: str, text: str, space: Space, height: int) -> list[Said]:
     try:
-        return tree_lines(label, parse_expression(text), space, height)
+        return _tree_lines(label, parse_expression(text), space, height)
     except EquationError:  # the record holds what was accepted then; the language of now may be another
         return [Said(line) for line in _labelled(label, broken(space.characters.text(text), space.room))]
 
 
-def fitted(blocks: Sequence[Sequence[Said]], height: int, more: str) -> list[Said]:
-    """Blocks below each other as far as they fit; the last line says how to see the rest."""
-    lines = [line for block in blocks for line in block]
+def _fitted(lines: list[Said], height: int) -> list[Said]:
+    """As many lines as there is room for; the last one says how to see the rest."""
     if len(lines) <= height:
         return lines
-    return [*lines[: max(height - 1, 0)], Said(" " * GUTTER + more, "quiet")][: max(height, 0)]
+    return [*lines[: max(height - 1, 0)], Said(" " * GUTTER + "r shows all of it", "quiet")][: max(height, 0)]
 
 
 def _labelled(label: str, lines: Sequence[str], at: int = 0) -> list[str]:

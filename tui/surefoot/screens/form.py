@@ -60,8 +60,9 @@ class Fault:
 
     Attributes:
         field: name of the field; empty for a key that the form does not show, which `message` then names.
-        line, column: place in the text of the field, from 1.
+        line, column: place in the text of the field, from 1; column 0 when the whole field is meant.
         hint: what would be accepted; empty when there is nothing to say.
+        missing: the name that has no value yet, where that is all; empty otherwise.
     """
 
     field: str
@@ -69,6 +70,7 @@ class Fault:
     line: int = 1
     column: int = 1
     hint: str = ""
+    missing: str = ""
 
     def __str__(self) -> str:
         said = self.message + (f"; {self.hint}" if self.hint else "")
@@ -77,8 +79,8 @@ class Fault:
     @property
     def place(self) -> str:
         """The place in words: `inputs, line 2, column 5`."""
-        several = self.field in ("where", "inputs") or self.line > 1
-        return label_of(self.field) + (f", line {self.line}" if several else "") + f", column {self.column}"
+        line = f", line {self.line}" if self.field in ("where", "inputs") or self.line > 1 else ""
+        return label_of(self.field) + line + (f", column {self.column}" if self.column else "")
 
 
 @dataclass(frozen=True, slots=True)
@@ -223,7 +225,9 @@ def problem_of(form: Form, base: Problem = NOTHING) -> Problem | Fault:
         if fault := check(form):
             return fault
     if not form.equation.strip():
-        return Fault("equation", "there is no equation yet", hint="write left = right, or an expression meant to be 0")
+        return Fault(
+            "equation", "there is no equation yet", column=0, hint="write left = right, or an expression meant to be 0"
+        )
     where = _definitions(form.where, shown.where, base)
     if isinstance(where, Fault):
         return where
@@ -247,7 +251,7 @@ def problem_of(form: Form, base: Problem = NOTHING) -> Problem | Fault:
 def _fault_of_unknown(form: Form) -> Fault | None:
     name = form.unknown.strip()
     if not name:
-        return Fault("unknown", "the unknown is not named yet", hint="write the name that is solved for")
+        return Fault("unknown", "not named yet", column=0, hint="write the name that is solved for")
     return None if is_name(name) else Fault("unknown", f"{name} is not a name", hint=_NAME_HINT)
 
 
@@ -261,7 +265,8 @@ def _fault_of_numbers(form: Form) -> Fault | None:
             column = len(text) - len(text.lstrip()) + 1
             return Fault(field, f"{text.strip()} is not a number", column=column, hint=number_hint(text.strip()))
     if bool(form.low.strip()) != bool(form.high.strip()):
-        return Fault("high" if form.low.strip() else "low", "the range has one end only", hint="write both, or none")
+        empty = "high" if form.low.strip() else "low"
+        return Fault(empty, "the range has one end only", column=0, hint="write both, or none")
     return None
 
 
@@ -350,7 +355,8 @@ def _part(text: str, start: int, end: int) -> tuple[str, int]:
 def _input(entry: Entry, base: Input | None) -> Input | Fault:
     """The input of an entry; what the form does not show is taken from the input of that name before."""
     if not entry.text:
-        return Fault("inputs", f"{entry.name} has no value yet", entry.text_line, entry.text_column)
+        place = (entry.text_line, entry.text_column)
+        return Fault("inputs", f"{entry.name} has no value yet", *place, missing=entry.name)
     parts = input_parts(entry.text)
     for part in (parts.value, parts.low, parts.high):
         if part is not None and not is_literal(part[0]) and (part[0] or part is parts.value):

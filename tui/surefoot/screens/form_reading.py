@@ -113,12 +113,12 @@ def tidied(form: Form, reading: Reading) -> Form:
         return form
     unknown = form.unknown.strip() or reading.proposed
     wanted = [name for name in reading.nameless if name != unknown] if unknown else []
-    kept, present = [], set()
+    lines, kept, present = form.inputs.split("\n"), [], set()
     for entry in entries_of(form.inputs, continued=False):
         left_over = entry.assigned and not entry.text and is_name(entry.name)
         if not (left_over and (entry.name == unknown or entry.name not in reading.nameless)):
             present.add(entry.name)
-            kept.append(entry.raw)
+            kept.append(lines[entry.line - 1])
     added = [f"{name} = " for name in wanted if name not in present]
     same = len(kept) == sum(1 for _ in entries_of(form.inputs, continued=False)) and not added
     return replace(form, unknown=form.unknown or unknown, inputs=form.inputs if same else "\n".join(kept + added))
@@ -153,9 +153,10 @@ def fault_of(error: ProblemError, form: Form, problem: Problem) -> Fault:
 
 def _fault_of_entry(error: ProblemError, form: Form, problem: Problem, field: str, path: list[str]) -> Fault | None:
     entries = entries_of(getattr(form, field), continued=field == "where")
-    entry = next((each for each in entries if each.name == path[0]), None)
-    if entry is None:
+    named = [each for each in entries if each.name == path[0]]
+    if not named:
         return None
+    entry = named[-1]  # of a name that is stated twice, the repetition
     cause = error.equation_error
     if cause is None:
         key = path[1] if len(path) > 1 else ""

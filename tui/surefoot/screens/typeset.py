@@ -194,7 +194,8 @@ class _Setter:
 
     def _exponent(self, node: Expression) -> str:
         text = self.characters.text(to_text(node))
-        return text if _level(node) >= _SIGN else f"({text})"
+        inner = node.operand if isinstance(node, Negate) else node
+        return text if _level(inner) == _WHOLE else f"({text})"
 
     def _applied(self, name: str, arguments: Sequence[Expression]) -> Box:
         pieces: list[Box] = []

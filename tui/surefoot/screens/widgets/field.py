@@ -18,6 +18,8 @@ MAX_PASTE = 50_000
 class OneLine(Input):
     """A field of one line; the first line of what is pasted goes into it."""
 
+    DEFAULT_CSS = "OneLine > .input--placeholder { text-style: dim; }"
+
     def __init__(self, *, id: str, placeholder: str = "") -> None:  # noqa: A002 - the toolkit's name
         super().__init__(id=id, compact=True, placeholder=placeholder, select_on_focus=False)
         self.cursor_blink = False
@@ -36,6 +38,7 @@ class ManyLines(TextArea):
         enter_goes_on: enter leaves the field for the next one, since what it holds is one text.
     """
 
+    DEFAULT_CSS = "ManyLines > .text-area--placeholder { text-style: dim; }"
     BINDINGS: ClassVar[list[BindingType]] = [Binding("ctrl+underscore,alt+z", "undo", show=False)]
 
     class Pasted(Message):

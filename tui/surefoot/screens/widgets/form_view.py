@@ -21,13 +21,14 @@ class FormView(Container):
     FormView { height: auto; }
     FormView .row { height: 1; }
     FormView #equation-row, FormView #lists, FormView #lists Vertical { height: auto; }
-    FormView Static { width: auto; height: 1; }
+    FormView Static { width: auto; height: 1; text-style: dim; }
     FormView .head { width: 10; }
     FormView OneLine { width: 4fr; text-style: underline; }
     FormView #unknown, FormView #unit { width: 3fr; }
     FormView #lists Vertical { width: 1fr; }
     FormView #lists #where-side { width: 3fr; margin-right: 1; }
     FormView #lists #inputs-side { width: 2fr; }
+    FormView #title { margin-right: 1; }
     FormView ManyLines { width: 1fr; scrollbar-size: 0 0; }
     FormView #where, FormView #inputs { margin-left: 1; }
     """
@@ -70,11 +71,11 @@ class FormView(Container):
             yield ManyLines(id="equation", placeholder="left = right", enter_goes_on=True)
         with Horizontal(id="lists"):
             with Vertical(id="where-side"):
-                yield Static(" where  name = expression", id="where-label")
-                yield ManyLines(id="where")
+                yield Static(" where", id="where-label")
+                yield ManyLines(id="where", placeholder="name = expression")
             with Vertical(id="inputs-side"):
-                yield Static(" inputs  name = value unit [low, high]", id="inputs-label")
-                yield ManyLines(id="inputs")
+                yield Static(" inputs", id="inputs-label")
+                yield ManyLines(id="inputs", placeholder="name = value unit [low, high]")
 
     # -- texts ------------------------------------------------------------------------------------------------------
 
@@ -130,23 +131,27 @@ class FormView(Container):
             return
         field = self.field(fault.field)
         if isinstance(field, Input):
-            field.cursor_position = fault.column - 1
+            field.cursor_position = max(fault.column - 1, 0)
         elif isinstance(field, ManyLines):
             field.go_to(fault.line, fault.column)
         field.focus()
 
-    def lock(self, locked: bool) -> None:
+    def allow_typing(self, allowed: bool) -> None:
         """Whether the fields can be entered."""
         for name in FIELDS:
-            self.field(name).can_focus = not locked
+            self.field(name).can_focus = allowed
 
     def on_input_submitted(self, event: Input.Submitted) -> None:
         event.stop()
         self.screen.focus_next()
 
     def on_many_lines_gone_on(self, event: ManyLines.GoneOn) -> None:
+        """From the equation one goes on to naming the unknown, where it is not named, else to the next field."""
         event.stop()
-        self.screen.focus_next()
+        if self._text("unknown").strip():
+            self.screen.focus_next()
+        else:
+            self.enter_field("unknown")
 
     def on_input_changed(self, event: Input.Changed) -> None:
         event.stop()
@@ -177,10 +182,10 @@ class FormView(Container):
         wanted = max(self._lines("where"), self._lines("inputs")) + 1
         lists = _between(wanted, min(4, max(height - 8, 1)), max(height * 2 // 5 - 1, 1))
         self.field("equation").styles.height = equation
-        for name, label in (("where", "name = expression"), ("inputs", "name = value unit [low, high]")):
+        for name in ("where", "inputs"):
             self.field(name).styles.height = lists
             lines = self._lines(name)
-            more = f"  {lines} lines" if lines > lists else f"  {label}"
+            more = f", {lines} lines" if lines > lists else ""
             self.query_one(f"#{name}-label", Static).update(f" {name}{more}")
         return max(height - _LABEL_ROWS - equation - lists, 0)
 
