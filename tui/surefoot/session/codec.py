@@ -8,21 +8,16 @@ from __future__ import annotations
 
 from collections.abc import Callable, Mapping
 from dataclasses import dataclass
-from functools import cache
-from typing import Any, cast
+from typing import Any
 
-from surefoot.equation.arithmetic import Arithmetic
-from surefoot.equation.binary64 import BINARY64
-from surefoot.equation.choice import arithmetic_of
 from surefoot.equation.problem_content import (
     derivative_from_content,
     derivative_to_content,
     problem_from_content,
     problem_to_content,
 )
-from surefoot.equation.results import Real
 from surefoot.errors import RecordError, SurefootError
-from surefoot.methods.contract import Ending, Method, Spent, State
+from surefoot.methods.contract import Ending, Spent, State
 from surefoot.methods.plan_table import plan_from_table, plan_to_table
 from surefoot.methods.states import (
     decode_ending,
@@ -34,7 +29,6 @@ from surefoot.methods.states import (
     encode_spent,
     encode_state,
 )
-from surefoot.methods.table import method_of
 from surefoot.session.canonical import Json
 from surefoot.session.entry import Entry
 from surefoot.session.environment import environment_from_content, environment_to_content
@@ -52,39 +46,8 @@ from surefoot.session.events import (
     StepTaken,
     Withdrawn,
 )
-from surefoot.session.state import Run, SessionState
-
-
-@dataclass(frozen=True, slots=True)
-class Tools:
-    """What the numbers of a run are written and read with.
-
-    Attributes:
-        reading: the arithmetic as far as decoding goes. For binary64 it is `float` itself, to the same bits and three
-            times as fast; that a text is also the one that would be written is for recomputing to find.
-    """
-
-    method: Method
-    arithmetic: Arithmetic
-    reading: Arithmetic
-
-
-@dataclass(frozen=True, slots=True)
-class _Reading:
-    kind: str
-    decode: Callable[[str], Real]
-
-
-@cache
-def tools_for(method: str, arithmetic: str) -> Tools:
-    """The method and the arithmetic of these codes. Raises PlanError or ProblemError when there are none."""
-    chosen = arithmetic_of(arithmetic)
-    decode = float if chosen is BINARY64 else chosen.decode
-    return Tools(method_of(method), chosen, cast(Arithmetic, _Reading(chosen.kind, decode)))
-
-
-def tools_of(run: Run) -> Tools:
-    return tools_for(run.plan.method, run.plan.arithmetic)
+from surefoot.session.state import SessionState
+from surefoot.session.tools import Tools, tools_for, tools_of
 
 
 def content_of(what: Happening, before: SessionState) -> dict[str, Json]:

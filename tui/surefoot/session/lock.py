@@ -107,7 +107,7 @@ def acquire(session: Path, me: Holder, *, take_over: bool = False) -> Lock:
         # The advisory lock first: of two that find an orphaned sidecar, only one goes on to replace it.
         free = _advisory_lock(descriptor)
         inode, notice = _take_sidecar(session, me, free=free, take_over=take_over)
-    except BaseException:
+    except RecordError:
         os.close(descriptor)
         raise
     return Lock(lock_path(session), descriptor, inode, notice)

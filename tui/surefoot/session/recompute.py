@@ -11,7 +11,7 @@ from dataclasses import dataclass, field, replace
 from pathlib import Path
 
 from surefoot.errors import RecordError, SurefootError
-from surefoot.session.codec import content_of, event_of, tools_for
+from surefoot.session.codec import content_of, event_of
 from surefoot.session.comparison import Difference, compare, places_words
 from surefoot.session.entry import NO_HASH, Entry, read_entry, read_unchecked
 from surefoot.session.environment import Environment, differences, environment
@@ -22,6 +22,7 @@ from surefoot.session.loading import notices_of
 from surefoot.session.record import read_bytes
 from surefoot.session.solver import Solver, Stop, iterate_put, run_begun, starts_from, step_taken
 from surefoot.session.state import SessionState, StatedProblem
+from surefoot.session.tools import tools_for
 
 
 @dataclass(frozen=True, slots=True)

@@ -21,10 +21,10 @@ from surefoot.methods.rounding import sign
 from surefoot.methods.stepper import Stepper
 from surefoot.methods.table import method_of
 from surefoot.methods.trial import Landing
-from surefoot.session.codec import tools_of
 from surefoot.session.commands import BeginRun, BeginVariant, PutIterate, StateProblem
 from surefoot.session.events import IteratePut, ProblemStated, RunBegun, StepTaken
 from surefoot.session.state import Run, SessionState, StatedProblem
+from surefoot.session.tools import tools_of
 
 Stop: TypeAlias = Callable[[], bool]
 _Done = TypeVar("_Done")
