@@ -27,6 +27,7 @@ def function_picture(
     x: Axis | None = None,
     f: Axis | None = None,
     bounds: tuple[float, float] | None = None,
+    marks: Sequence[Mark] = (),
 ) -> Picture:
     """f over the range of the samples: the curve, the zero line with the iterates on it, and the last step.
 
@@ -41,16 +42,17 @@ def function_picture(
         x: name and unit of the unknown; limits other than those of the samples.
         f: name and unit of f; limits other than those that suit the curve.
         bounds: the bounds of the step control, drawn as vertical lines.
+        marks: further marks, such as the places where trial steps would land.
     """
     curve, poles = broken_at_poles(*samples)
     f = f or Axis("f")
-    on_zero = iterate_marks([(x, 0.0) for x, _ in iterates])
+    on_zero = iterate_marks(iterates, on_zero=True)
     verticals = [Vertical(pole, "pole") for pole in poles]
     verticals += [Vertical(bound) for bound in bounds or ()]
     return Picture(
         curves=(curve,),
         segments=() if step is None else step_segments(step),
-        marks=(*on_zero[:-1], *(() if step is None else base_marks(step)), *on_zero[-1:]),
+        marks=(*on_zero[:-1], *(() if step is None else base_marks(step)), *marks, *on_zero[-1:]),
         verticals=tuple(verticals),
         horizontals=(0.0,),
         x=sampled_axis(x or Axis("x"), samples[0]),
@@ -93,7 +95,10 @@ def sampled_axis(axis: Axis, xs: Sequence[float]) -> Axis:
     return replace(axis, low=low if axis.low is None else axis.low, high=high if axis.high is None else axis.high)
 
 
-def iterate_marks(points: Sequence[tuple[float, float]]) -> list[Mark]:
+def iterate_marks(points: Sequence[Point], on_zero: bool = False) -> list[Mark]:
     """Marks of iterates, the oldest first: the last is the one in hand, the one before it stands out too."""
     kinds = ["iterate"] * (len(points) - 2) + ["previous", "current"]
-    return [Mark(x, y, kind, keep=False) for (x, y), kind in zip(points, kinds[-len(points) :], strict=False)]
+    return [
+        Mark(x, y, kind, keep=False, on_zero=on_zero)
+        for (x, y), kind in zip(points, kinds[-len(points) :], strict=False)
+    ]

@@ -41,12 +41,19 @@ class Mark:
         y: the place.
         kind: a name that `Characters.mark` knows, or one ASCII character.
         keep: whether limits that the picture chooses itself must take the mark in.
+        on_zero: drawn on the zero line below or above its place, as an iterate is.
     """
 
     x: float
     y: float | None
     kind: str
     keep: bool = True
+    on_zero: bool = False
+
+    @property
+    def height(self) -> float | None:
+        """The y at which the mark is drawn."""
+        return 0.0 if self.on_zero else self.y
 
 
 @dataclass(frozen=True, slots=True)

@@ -3,12 +3,14 @@
 from __future__ import annotations
 
 import math
+from typing import Final
 
 from surefoot.figures.characters import Characters
 from surefoot.figures.numbers import short, significant
 from surefoot.figures.picture import Picture, place
 
-_DIGITS = 6
+_DIGITS: Final = 6
+_LARGEST_WHOLE: Final = 10.0**_DIGITS
 
 
 def as_table(picture: Picture, width: int, height: int, characters: Characters) -> list[str]:
@@ -20,19 +22,29 @@ def as_table(picture: Picture, width: int, height: int, characters: Characters) 
     """
     width, height = max(width, 0), max(height, 0)
     titles = " ".join(filter(None, (picture.x.title, picture.y.title)))
-    rows = [f"  {titles}"] if titles else []
-    rows += [_row(characters.mark(mark.kind), mark.x, mark.y) for mark in reversed(picture.marks)][:height]
-    left = height - len(rows)
+    head = [f"  {titles}"] if titles else []
+    rows = [_row(characters.mark(mark.kind), mark.x, mark.y, width) for mark in picture.marks[: -height - 1 : -1]]
+    left = height - len(head) - len(rows)
     for curve in picture.curves:
-        share = left // len(picture.curves)
         points = [(x, y) for x, y in zip(curve.xs, curve.ys, strict=False) if math.isfinite(place(y))]
-        step = max(1, math.ceil(len(points) / share)) if share > 0 else len(points) + 1
-        rows += [_row(" ", x, y) for x, y in points[::step]]
-    if not rows[1 if titles else 0 :]:
-        rows = [picture.empty]
-    rows += [""] * (height - len(rows))
-    return [characters.fit(row, width) for row in rows[:height]]
+        share = left // len(picture.curves)
+        if share > 0:
+            rows += [_row(" ", x, y, width) for x, y in points[:: math.ceil(len(points) / share) or 1]]
+    lines = [*head, *rows] if rows else [picture.empty]
+    lines += [""] * (height - len(lines))
+    return [characters.fit(line, width) for line in lines[:height]]
 
 
-def _row(glyph: str, x: float, y: float | None) -> str:
-    return f"{glyph} {significant(x, _DIGITS)} {'' if y is None else short(y)}"
+def _row(glyph: str, x: float, y: float | None, width: int) -> str:
+    """Both numbers where they fit, else x to as many digits as do."""
+    row = f"{glyph} {_written(x, _DIGITS)} {short(y)}"
+    digits = _DIGITS
+    while len(row) > width and digits:
+        row = f"{glyph} {_written(x, digits)}"
+        digits -= 1
+    return row.rstrip()
+
+
+def _written(x: float, digits: int) -> str:
+    at = place(x)
+    return str(int(at)) if at.is_integer() and abs(at) < _LARGEST_WHOLE else significant(x, digits)

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Iterable, Sequence
+from itertools import product
 from typing import Final
 
 from surefoot.figures.characters import Characters
@@ -37,7 +38,7 @@ def draw(picture: Picture, width: int, height: int, characters: Characters) -> l
     """
     width, height = max(width, 0), max(height, 0)
     axes = scales(picture)
-    if axes is None:
+    if axes is None or (_hollow(picture) and not picture.segments and not picture.marks):
         return _words(picture.empty, width, height, characters)
     frame = frame_of(picture, *axes, width, height)
     if frame is None:
@@ -100,7 +101,7 @@ def _marks(cells: list[list[str]], picture: Picture, frame: Frame, characters: C
     """Draws the marks over all else; those beside the picture as arrows at its edge."""
     drawn: dict[tuple[int, int], str] = {}
     for mark in picture.marks:
-        x, y = frame.x.fraction(mark.x), frame.y.fraction(mark.y)
+        x, y = frame.x.fraction(mark.x), frame.y.fraction(mark.height)
         if math.isnan(x):
             continue
         kind = mark.kind
@@ -127,29 +128,45 @@ def _composed(cells: list[list[str]], picture: Picture, frame: Frame, characters
         lines[row][: len(text)] = text
     for start, text in frame.x_labels:
         lines[frame.rows][start : start + len(text)] = text
-    y_title = characters.text(_noted(picture.y, frame.y_ticks))
-    at = _room(lines[0], len(y_title))
-    if at is not None:
-        lines[0][at : at + len(y_title)] = y_title
-    x_title = characters.text(_noted(picture.x, frame.x_ticks))
-    x_title = characters.fit(x_title, min(len(x_title), frame.width))
-    at = frame.width - len(x_title) if frame.reserved else _room(lines[-1], len(x_title))
-    if at is not None:
-        lines[-1][at : at + len(x_title)] = x_title
+    hollow = _hollow(picture)
+    titles = [picture.empty] if hollow else _titles(picture.y, frame.y_ticks)
+    told = _titled(lines[: frame.rows // 2 + 1], map(characters.text, titles), range(frame.width))
+    if frame.y_ticks.note and (hollow or not told):  # labels that nobody can read are none
+        for row, text in frame.y_labels:
+            lines[row][: len(text)] = " " * len(text)
+    told = _titled(lines[-1:], map(characters.text, _titles(picture.x, frame.x_ticks)), (frame.width, 0))
+    if frame.x_ticks.note and not told:
+        lines[frame.rows] = [" "] * frame.width
     return ["".join(line) for line in lines]
 
 
-def _noted(axis: Axis, ticks: Ticks) -> str:
-    """The title of an axis, and how its labels are read."""
-    return f"{axis.title}: {ticks.note}" if axis.title and ticks.note else axis.title or ticks.note
+def _hollow(picture: Picture) -> bool:
+    """Whether a picture has curves but none of them a value."""
+    values = (place(y) for curve in picture.curves for y in curve.ys)
+    return bool(picture.curves) and not any(map(math.isfinite, values))
 
 
-def _room(line: Sequence[str], length: int) -> int | None:
-    """The first cell of a line where a title can stand with a blank on either side."""
-    for start in range(len(line) - length + 1):
-        if all(cell == " " for cell in line[max(0, start - 1) : start + length + 1]):
-            return start
-    return None
+def _titles(axis: Axis, ticks: Ticks) -> list[str]:
+    """What to write at an axis, best first: its title and how its labels are read, or the latter alone."""
+    if axis.title and ticks.note:
+        return [f"{axis.title}: {ticks.note}", ticks.note]
+    return [axis.title or ticks.note]
+
+
+def _titled(lines: Sequence[list[str]], titles: Iterable[str], starts: Iterable[int]) -> bool:
+    """Writes the first title for which there is a place where it covers nothing; whether there was one.
+
+    Args:
+        lines: the lines to try, in order.
+        titles: the titles to try, in order.
+        starts: the cells of a line to try, in order; one so far right that the title would stick out is moved left.
+    """
+    for title, line, start in product(titles, lines, starts):
+        at = min(start, len(line) - len(title))
+        if at >= 0 and all(cell == " " for cell in line[max(0, at - 1) : at + len(title) + 1]):
+            line[at : at + len(title)] = title
+            return True
+    return False
 
 
 def _words(words: str, width: int, height: int, characters: Characters) -> list[str]:

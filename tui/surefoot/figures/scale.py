@@ -67,7 +67,7 @@ def scales(picture: Picture) -> tuple[Scale, Scale] | None:
         for at, value in zip(curve.xs, curve.ys, strict=False)
         if x.low <= across.place(at) <= x.high
     ]
-    kept = [up.place(mark.y) for mark in picture.marks if mark.keep and x.low <= across.place(mark.x) <= x.high]
+    kept = [up.place(mark.height) for mark in picture.marks if mark.keep and x.low <= across.place(mark.x) <= x.high]
     kept += [up.place(value) for value in picture.horizontals]
     values = _finite(shown)
     y = _limits(picture.y, [*(_range(values) if picture.y.log else _robust(values)), *_finite(kept)])

@@ -37,8 +37,11 @@ class StepShape:
 def base_marks(step: StepShape) -> list[Mark]:
     """The points that the step rests on: the ends of a bracket on the zero line, others on the curve."""
     if step.shape == "bracket" and len(step.points) > 1:
-        low, high = sorted(x for x, _ in step.points[:2])
-        return [Mark(low, 0.0, "bracket_low", keep=False), Mark(high, 0.0, "bracket_high", keep=False)]
+        low, high = sorted(step.points[:2], key=lambda point: point[0])
+        return [
+            Mark(*low, "bracket_low", keep=False, on_zero=True),
+            Mark(*high, "bracket_high", keep=False, on_zero=True),
+        ]
     return [Mark(x, y, "base") for x, y in step.points if y is not None and math.isfinite(place(y))]
 
 
@@ -51,11 +54,12 @@ def step_segments(step: StepShape) -> tuple[Segment, ...]:
     if step.shape == "parabola" and len(points) > 2:
         return _parabola(points[:3], step.landing)
     ends = points[:2] if step.shape == "chord" else points[:1]
+    slope = place(step.slope)
     if step.landing is not None:
         ends.append((place(step.landing), 0.0))
-    elif step.slope and len(ends) == 1:
-        ends.append((ends[0][0] - ends[0][1] / step.slope, 0.0))
-    return tuple(Segment(*a, *b) for a, b in pairwise(ends))
+    elif slope and len(ends) == 1:
+        ends.append((ends[0][0] - ends[0][1] / slope, 0.0))
+    return tuple(Segment(*a, *b) for a, b in pairwise(sorted(ends)))
 
 
 def _parabola(points: Sequence[tuple[float, float]], landing: float | None) -> tuple[Segment, ...]:

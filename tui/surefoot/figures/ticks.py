@@ -17,6 +17,7 @@ from surefoot.figures.scale import Scale
 
 _MOST_DIGITS: Final = 4
 _MOST_TICKS: Final = 60
+_SLACK: Final = Fraction(1, 10**9)
 _LARGEST_EXPONENT: Final = 308.25  # 10.0 to a larger power is no float
 
 
@@ -59,7 +60,7 @@ def choose(scale: Scale, fits: Fits) -> Ticks:
 
 def _decades(scale: Scale) -> Iterator[Ticks]:
     """Powers of ten, from far apart to each."""
-    for step in (100, 50, 20, 10, 5, 3, 2, 1):
+    for step in (500, 200, 100, 50, 20, 10, 5, 3, 2, 1):
         first = math.ceil(scale.low / step) * step
         exponents = range(first, math.floor(scale.high) + 1, step)
         span = scale.high - scale.low
@@ -80,7 +81,9 @@ def _steps(scale: Scale) -> Iterator[Ticks]:
 
 def _multiples(scale: Scale, low: Fraction, high: Fraction, factor: int, power: int) -> Ticks:
     step = factor * Fraction(10) ** power
-    first, last = math.ceil(low / step), math.floor(high / step)
+    # The limit that is typed as 0.3 is a binary number just below it, and has its label all the same.
+    slack = (high - low) * _SLACK
+    first, last = math.ceil((low - slack) / step), math.floor((high + slack) / step)
     if last - first > _MOST_TICKS:
         last = first + _MOST_TICKS
     counts = [factor * n for n in range(first, last + 1)]
@@ -89,6 +92,7 @@ def _multiples(scale: Scale, low: Fraction, high: Fraction, factor: int, power: 
         fractions = [scale.fraction(float(count * Fraction(10) ** power)) for count in counts]
     else:
         fractions = [float((count * Fraction(10) ** power - low) / (high - low)) for count in counts]
+    fractions = [min(max(fraction, 0.0), 1.0) for fraction in fractions]
     return Ticks(tuple(Tick(fraction, text) for fraction, text in zip(fractions, texts, strict=True)), note)
 
 
