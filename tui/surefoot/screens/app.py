@@ -28,7 +28,7 @@ from surefoot.screens.looks import DEFAULT_LOOK, LOOKS, Kind
 from surefoot.screens.pictures import Sampler
 from surefoot.screens.room import Room
 from surefoot.screens.words import clock, run_words, title_words
-from surefoot.session.commands import Command
+from surefoot.session.commands import BeginRun, BeginVariant, Command, StateProblem
 from surefoot.session.session import Session
 from surefoot.session.state import StatedProblem
 
@@ -204,9 +204,9 @@ class SurefootApp(App[int], inherit_bindings=False):
         if key.needs is None:
             return None
         if self.session is None:
-            needs_session = key.needs.__name__ != "StateProblem"
-            return Refused("no problem yet", "accept a function first") if needs_session else None
-        return self.session.refusal(key.needs)
+            return None if key.needs is StateProblem else Refused("no problem yet", "accept a function first")
+        varied = key.needs is BeginRun and self.variant is not None
+        return self.session.refusal(BeginVariant if varied else key.needs)
 
     def perform(self, command: Command) -> bool:
         """Do a command now. False, with the reason in the message line, when it was not done."""
@@ -238,8 +238,7 @@ class SurefootApp(App[int], inherit_bindings=False):
             self.working = ""
             then()
             self.redraw_room()
-            if said:
-                self.tell(said, kind)
+            self.tell(said, kind)
 
         self.run_worker(run, thread=True, exclusive=True)
 

@@ -22,7 +22,6 @@ from surefoot.figures.function_picture import Samples, StepShape, function_pictu
 from surefoot.figures.picture import Axis
 from surefoot.figures.plot import draw
 from surefoot.methods.contract import Account, Iterate
-from surefoot.methods.table import method_of
 from surefoot.screens.step_table import Window
 from surefoot.session.state import Run, StatedProblem
 
@@ -103,8 +102,7 @@ def convergence_lines(run: Run, width: int, height: int, characters: Characters)
     for before, iterate in zip((None, *tail), tail, strict=False):
         dx = None if before is None else near(iterate.x - before.x)
         steps.append((iterate.k, dx, _value(near, iterate.f)))
-    bracket = method_of(run.plan.method).traits.bracket
-    return draw(convergence_picture(steps, bracket=bracket), width, height, characters)
+    return draw(convergence_picture(steps, name=run.stated.problem.unknown), width, height, characters)
 
 
 def _samples(sampler: Sampler, window: tuple[float, float], width: int) -> Samples:
