@@ -67,7 +67,7 @@ def test_the_residual_at_published_roots_is_small_beside_its_terms(code: str) ->
         shift = 4.0 * math.ulp(x)
         change = abs(function.value(x + shift) - function.value(x - shift))
         assert abs(function.value(x)) <= 1e-13 * size_of_terms(checked, x) + change, x
-        assert change <= 1e-8 * size_of_terms(checked, x) or len(terms(checked.residual)) == 1, x
+        assert change <= 1e-6 * size_of_terms(checked, x) or len(terms(checked.residual)) == 1, x
 
 
 @pytest.mark.parametrize("code", sorted(EVERYTHING))

@@ -107,7 +107,8 @@ def _problem(text: str, random: Random) -> Problem:
     problem = Problem(unknown, text, inputs=inputs)
     place = random.randrange(4)
     if place == 0:
-        return replace(problem, equation=f"{unknown} = Quantity", where=(Definition("Quantity", text.replace("=", "-", 1)),))
+        quantity = Definition("Quantity", text.replace("=", "-", 1))
+        return replace(problem, equation=f"{unknown} = Quantity", where=(quantity,))
     if place == 1:
         return replace(problem, equation=unknown, admissible=(text,))
     return problem
