@@ -242,10 +242,9 @@ class SurefootApp(App[int], inherit_bindings=False):
 
         self.run_worker(run, thread=True, exclusive=True)
 
-    def stop_work(self) -> bool:
-        """Ask the work under way to stop; False: the key that asked did nothing else."""
+    def stop_work(self) -> None:
+        """Ask the work under way to stop; what it has done stays done."""
         self._stop.set()
-        return False
 
     # -- what rooms show --------------------------------------------------------------------------------------------
 

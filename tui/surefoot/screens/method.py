@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import replace
 from textwrap import wrap
 from typing import ClassVar
 
@@ -11,12 +12,14 @@ from textual.binding import Binding, BindingType
 from textual.containers import Horizontal, Vertical
 
 from surefoot.errors import PlanError
+from surefoot.figures.numbers import significant
 from surefoot.methods.contract import Traits
 from surefoot.methods.table import METHODS
 from surefoot.screens.commands import bindings_of
 from surefoot.screens.dialogs import Ask, Choose
-from surefoot.screens.pictures import start_picture
-from surefoot.screens.plan_form import PlanForm, PlanRow, form_of_plan, form_of_table
+from surefoot.screens.picking import Picking
+from surefoot.screens.pictures import start_picture, start_window
+from surefoot.screens.plan_form import PlanForm, form_of_plan, form_of_table
 from surefoot.screens.room import Room
 from surefoot.screens.widgets.lines import Lines
 from surefoot.session.commands import BeginRun, BeginVariant
@@ -35,8 +38,12 @@ class MethodRoom(Room):
         Binding("down", "move(1)", show=False),
         Binding("pageup", "move(-8)", show=False),
         Binding("pagedown", "move(8)", show=False),
-        Binding("left,right", "slide", show=False),
+        Binding("left", "slide(-1)", show=False),
+        Binding("right", "slide(1)", show=False),
+        Binding("shift+left", "slide(-10)", show=False),
+        Binding("shift+right", "slide(10)", show=False),
         Binding("tab", "other_list", show=False),
+        Binding("escape", "leave_picking", show=False),
     ]
 
     def __init__(self) -> None:
@@ -46,6 +53,7 @@ class MethodRoom(Room):
         self.at = 0
         self.zoomed = False
         self.started = False
+        self.picking: Picking | None = None
 
     def compose_body(self) -> ComposeResult:
         with Horizontal():
@@ -124,7 +132,7 @@ class MethodRoom(Room):
             value = row.value or (f"({row.default})" if row.default else "-")
             if row.key.startswith("start ") and self.surefoot.variant is not None:
                 value = "(from the iterate)"
-            text = f"{'*' if row.value else ' '}{row.key:<24} {value}"[: max(width - 1, 0)]
+            text = f"{'*' if row.value else ' '}{row.key:<28}{value}"[: max(width - 1, 0)]
             lines.append(self.styled(text.ljust(width - 1), "here") if index == at else Text(text))
         return lines
 
@@ -147,13 +155,25 @@ class MethodRoom(Room):
             view.show([])
             return
         sampler = self.surefoot.sampler(state.stated)
-        starts = [value for _, value in self._starts() if value is not None]
-        characters = self.surefoot.characters
-        view.show(start_picture(sampler, starts, self.zoomed, view.size.width, view.size.height, characters))
+        starts = [value for value in map(_number, self._start_texts()) if value is not None]
+        cursor = None if self.picking is None else self.picking.x
+        size, characters = view.size, self.surefoot.characters
+        view.show(start_picture(sampler, starts, cursor, self.zoomed, size.width, size.height, characters))
 
-    def _starts(self) -> list[tuple[PlanRow, float | None]]:
-        rows = [row for row in self.form.rows() if row.key.startswith("start ")]
-        return [(row, _number(row.value)) for row in rows]
+    def _start_texts(self) -> list[str]:
+        return [row.value for row in self.form.rows() if row.key.startswith("start ")]
+
+    def remark(self) -> Text:
+        if self.picking is None or self.state is None or self.state.stated is None:
+            return Text("")
+        problem = self.state.stated.problem
+        f = self.surefoot.sampler(self.state.stated).at(self.picking.x)
+        value = "no value there" if f is None else significant(f, 4)
+        return self.styled(
+            f" start {self.picking.number}: {problem.unknown} = {self.picking.text}, f = {value}"
+            "   left, right move   enter takes it   esc leaves",
+            "value",
+        )
 
     # -- keys -------------------------------------------------------------------------------------------------------
 
@@ -168,10 +188,21 @@ class MethodRoom(Room):
         self.message = ""
         self.redraw()
 
-    def action_slide(self) -> None:
-        self.action_other_list()
+    def action_slide(self, by: int) -> None:
+        if self.picking is None:
+            self.action_other_list()
+        else:
+            self.picking = self.picking.moved(by)
+            self.redraw()
+
+    def action_leave_picking(self) -> None:
+        self.picking = None
+        self.redraw()
 
     def do_change(self) -> None:
+        if self.picking is not None:
+            self._take_picked(self.picking)
+            return
         if self.in_methods:
             self.form = self.form.with_method(list(METHODS)[self.at])
             self.action_other_list()
@@ -205,21 +236,23 @@ class MethodRoom(Room):
         self.zoomed = not self.zoomed
 
     def do_pick_start(self) -> None:
-        """Ask for the starts one after the other, with the picture in sight."""
-        rows = [row for row in self.form.rows() if row.key.startswith("start ")]
-        self._ask_start(rows, 0)
-
-    def _ask_start(self, rows: list[PlanRow], index: int) -> None:
-        if index >= len(rows):
+        """Choose the starts one after the other with a cursor on the picture."""
+        state = self.state
+        if state is None or state.stated is None or self.surefoot.variant is not None:
+            self.say("the starts of a variant are taken from its iterate", "alert")
             return
-        row = rows[index]
+        starts = [value for value in map(_number, self._start_texts()) if value is not None]
+        window = start_window(self.surefoot.sampler(state.stated), starts, self.zoomed)
+        if window is None:
+            self.say("give the working range (1 function) or type a start first", "alert")
+            return
+        self.picking = Picking(1, *window, max(self.query_one("#start-picture", Lines).size.width, 2))
 
-        def typed(text: str | None) -> None:
-            if text is not None:
-                self._set(row.key, text)
-                self._ask_start(rows, index + 1)
-
-        self.app.push_screen(Ask(f"{row.key} ({row.meaning}):", value=row.value), typed)
+    def _take_picked(self, picked: Picking) -> None:
+        self.form = self.form.with_value(f"start {picked.number}", picked.text)
+        more = picked.number < len(self._start_texts())
+        self.picking = replace(picked, number=picked.number + 1) if more else None
+        self.redraw()
 
     def do_begin(self) -> None:
         try:

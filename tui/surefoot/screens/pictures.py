@@ -8,6 +8,7 @@ from __future__ import annotations
 
 from collections import OrderedDict
 from collections.abc import Callable, Sequence
+from dataclasses import replace
 from typing import TypeAlias
 
 from surefoot.equation.binary64 import BINARY64
@@ -19,7 +20,7 @@ from surefoot.equation.results import Failure, Purpose, Real, Stopped
 from surefoot.figures.characters import Characters
 from surefoot.figures.convergence_picture import convergence_picture
 from surefoot.figures.function_picture import Samples, StepShape, function_picture, zoom
-from surefoot.figures.picture import Axis
+from surefoot.figures.picture import Axis, Mark, Vertical
 from surefoot.figures.plot import draw
 from surefoot.methods.contract import Account, Iterate
 from surefoot.screens.step_table import Window
@@ -52,6 +53,10 @@ class Sampler:
         self._kept.move_to_end(key)
         return self._kept[key]
 
+    def at(self, x: float) -> float | None:
+        """f at one place, None where it has no value."""
+        return _finite(self.meter.evaluate(x, Purpose.PICTURE))
+
     @property
     def range(self) -> tuple[float, float] | None:
         """The working range, None when the problem gives none."""
@@ -59,20 +64,33 @@ class Sampler:
         return None if ends is None else (BINARY64.literal(ends[0], False), BINARY64.literal(ends[1], False))
 
 
+def start_window(sampler: Sampler, starts: Sequence[float], zoomed: bool) -> tuple[float, float] | None:
+    """The window that starts are chosen in: the working range, or around the starts; None without either."""
+    around = zoom([(start, None) for start in starts], count=2)
+    return around if zoomed and around is not None else sampler.range or around
+
+
 def start_picture(
-    sampler: Sampler, starts: Sequence[float], zoomed: bool, width: int, height: int, characters: Characters
+    sampler: Sampler,
+    starts: Sequence[float],
+    cursor: float | None,
+    zoomed: bool,
+    width: int,
+    height: int,
+    characters: Characters,
 ) -> list[str]:
-    """f over the range, or around the starts, with the starts marked."""
-    points = [(start, None) for start in starts]
-    window = zoom(points, count=2) if zoomed and starts else sampler.range or zoom(points, count=2)
+    """f over the range, or around the starts, with the starts and the cursor marked."""
+    window = start_window(sampler, starts, zoomed)
     if window is None:
         return ["", " Give the working range (1 function) or a start", " to see f here."][:height]
-    return draw(
-        function_picture(_samples(sampler, window, width), iterates=points, x=_x_axis(sampler), f=Axis("f")),
-        width,
-        height,
-        characters,
-    )
+    points = [(start, None) for start in starts]
+    picture = function_picture(_samples(sampler, window, width), iterates=points, x=_x_axis(sampler), f=Axis("f"))
+    if cursor is not None:
+        f = sampler.at(cursor)
+        picture = replace(
+            picture, verticals=(*picture.verticals, Vertical(cursor)), marks=(*picture.marks, Mark(cursor, f, "+"))
+        )
+    return draw(picture, width, height, characters)
 
 
 def step_lines(

@@ -8,6 +8,7 @@ from __future__ import annotations
 from typing import TYPE_CHECKING, Any, ClassVar, cast
 
 from rich.text import Text
+from textual import events
 from textual.app import ComposeResult
 from textual.containers import Container
 from textual.screen import Screen
@@ -165,11 +166,18 @@ class Room(Screen[None]):
     def on_descendant_blur(self) -> None:
         self.redraw_foot()
 
+    def on_key(self, event: events.Key) -> None:
+        """While work is under way, any key asks it to stop and does nothing else."""
+        if self.surefoot.working:
+            event.stop()
+            event.prevent_default()
+            self.surefoot.stop_work()
+
     def action_press(self, action: str) -> None:
         """The gate: a key whose command is not allowed now says why; any other is done."""
-        self.message = ""
-        if self.surefoot.working and not self.surefoot.stop_work():
+        if self.surefoot.working:
             return
+        self.message = ""
         refusal = self.surefoot.refusal(key_of(self.place, action))
         if refusal is not None:
             self.say(str(refusal), "alert")
@@ -185,6 +193,7 @@ class Room(Screen[None]):
         self.surefoot.go("function")
 
     def do_go_method(self) -> None:
+        self.surefoot.variant = None
         self.surefoot.go("method")
 
     def do_go_steps(self) -> None:

@@ -158,7 +158,7 @@ class StepsRoom(Room):
         self._stepping()
 
         def work(stop: Callable[[], bool]) -> str:
-            session.do(TakeSteps(count), stop=stop)
+            session.do(TakeSteps(count), stop=stop, on_step=lambda _: self.app.call_from_thread(self.redraw))
             return "stopped; what was computed is on disk" if stop() else ""
 
         self.surefoot.perform_long(what, work, self.redraw)
