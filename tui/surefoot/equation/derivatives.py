@@ -22,7 +22,7 @@ from surefoot.errors import EquationError, SurefootError
 
 HIGHEST_ORDER = 3
 MOST_NODES = 20_000
-"""Nodes that the derivative of one line may have, as estimated before sympy is asked for it."""
+"""Nodes that the derivatives of all lines may have together, as estimated before sympy is asked for each."""
 
 # Heights of the trees that are differentiated at once (chain rule and sharing take care of more, and sympy recurses
 # several calls a level), and of the trees that are recorded.
@@ -63,6 +63,7 @@ class _Lines:
         self._moving = set(checked.moving)
         self._growing: set[str] = set()
         self._taken = RESERVED | checked.names.keys()
+        self._nodes = 0  # about how many were made so far
         self._numbered = 0  # of the last line that holds a shared part
         self._origin: dict[str, tuple[str, int]] = {}  # of each derivative line: the line it began with, and its order
         self._gaps: dict[str, None] = {}
@@ -125,7 +126,8 @@ class _Lines:
         moving = dependents(tree, self._moving | {self._unknown})
         if id(tree) not in moving:
             return Number("0")
-        if derivative_nodes(tree, moving) > MOST_NODES:
+        self._nodes += derivative_nodes(tree, moving)
+        if self._nodes > MOST_NODES:
             raise NoDerivative(f"the derivative{where} gets too long; put parts of the text on lines of [where]")
         bridge = Bridge(self._unknown, self._slopes, self._growing, self._typed)
         try:
