@@ -72,7 +72,7 @@ def test_a_signal_before_there_is_a_run_leaves_no_file(home: Home, capsys, monke
     def derive(*_: object) -> None:
         os.kill(os.getpid(), signal.SIGTERM)
 
-    monkeypatch.setattr("surefoot.session.solver.Solver.problem_stated", derive, raising=True)
+    monkeypatch.setattr("surefoot.session.solver.Solver.state_problem", derive)
     write(home.folder, LONG)
     assert main(["run", "colebrook.toml", "--save", "s.json"]) == 128 + signal.SIGTERM
     assert capsys.readouterr() == ("", "")

@@ -11,6 +11,9 @@ from support.command import Home
 from support.problem_files import PROBLEMS, PUBLISHED, published_root, write
 from surefoot.cli.main import main
 
+METHODS = {"sf-airy": ("secant", "-2.0, -2.4")}
+"""Where the derivative of f is not in the equation language."""
+
 
 def test_every_published_problem_has_its_file() -> None:
     assert {path.stem for path in PROBLEMS.glob("*.toml")} == set(PUBLISHED)
@@ -19,7 +22,8 @@ def test_every_published_problem_has_its_file() -> None:
 @pytest.mark.parametrize("problem", sorted(PUBLISHED))
 def test_a_published_problem_comes_to_its_published_root(home: Home, capsys, problem: str) -> None:
     known = published_root(problem)
-    plan = f'\n[plan]\nmethod = "newton-raphson"\nstart = [{known.start}]\n[plan.stop]\nx_relative = 1e-14\n'
+    method, starts = METHODS.get(problem, ("newton-raphson", known.start))
+    plan = f'\n[plan]\nmethod = "{method}"\nstart = [{starts}]\n[plan.stop]\nx_relative = 1e-12\n'
     write(home.folder, (PROBLEMS / f"{problem}.toml").read_text(encoding="utf-8") + plan)
     main(["run", "colebrook.toml", "--no-save", "--json"])
     answer = json.loads(capsys.readouterr().out)

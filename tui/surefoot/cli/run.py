@@ -36,7 +36,8 @@ def run(request: Request) -> int:
     with watching() as watch:
         problem, plan = _read(name)
         with _session(request, problem) as session:
-            done = _to_the_stop(session, problem, plan, watch)
+            with _naming(name):
+                done = _to_the_stop(session, problem, plan, watch)
             saved = None if request.flag("--no-save") else session.path
             (say_run_object if request.flag("--json") else say_run)(done, judge(done), saved)
     return judge(done).exit
@@ -49,15 +50,20 @@ def _read(name: str) -> tuple[Problem, Plan]:
         raise RequestError("this version runs no outside programs; state an equation", place=f"{name}: program")
     if file.plan is None:
         raise RequestError("is missing; a run needs a [plan] with method and start", place=f"{name}: plan")
-    try:
+    with _naming(name):
         checked = check_problem(file.problem)
         plan = plan_from_table(file.plan, file.arithmetic)
         check_plan(plan, checked)
-    except ProblemError as error:
-        raise ProblemError(error.message, place=error.place, file=name) from error
-    except PlanError as error:
-        raise RequestError(str(error), place=name) from error
     return file.problem, plan
+
+
+@contextmanager
+def _naming(name: str) -> Iterator[None]:
+    """Put the name of the file before what is wrong with the problem or the plan in it."""
+    try:
+        yield
+    except (ProblemError, PlanError) as error:
+        raise RequestError(str(error), place=name) from error
 
 
 @contextmanager
