@@ -28,7 +28,8 @@ class Frame:
         y: the vertical axis.
         x_ticks: labels of the horizontal axis, in the first line of the footer.
         y_ticks: labels of the vertical axis, in the gutter.
-        reserved: cells at the right end of the first line of the footer that belong to the title.
+        left: cells at the left end of the first line of the footer that belong to the title.
+        right: cells at its right end that do.
         margin: cells right of the canvas, for a label that sticks out.
     """
 
@@ -40,7 +41,8 @@ class Frame:
     footer: int
     y_ticks: Ticks
     x_ticks: Ticks
-    reserved: int
+    left: int
+    right: int
     margin: int
 
     @property
@@ -56,7 +58,7 @@ class Frame:
     @property
     def x_labels(self) -> list[tuple[int, str]]:
         """First cell, counted from the left end of the line, and text of the labels in the footer."""
-        return self._placed(self.x_ticks.ticks, self.reserved)
+        return self._placed(self.x_ticks.ticks)
 
     def column(self, value: float) -> int | None:
         """The column of a value; None beside the picture."""
@@ -68,22 +70,22 @@ class Frame:
         fraction = self.y.fraction(value)
         return row_of(fraction, self.rows) if 0 <= fraction <= 1 else None
 
-    def with_x_ticks(self, reserved: int, gap: int) -> Frame:
-        """The frame with the finest labels below that stand so far apart and leave cells at the right free."""
+    def with_x_ticks(self, gap: int) -> Frame:
+        """The frame with the finest labels below that stand so far apart beside the title."""
 
         def fits(ticks: Sequence[Tick]) -> bool:
-            labels = self._placed(ticks, reserved)
+            labels = self._placed(ticks)
             return all(start + len(text) + gap <= after for (start, text), (after, _) in pairwise(labels))
 
-        return replace(self, x_ticks=choose(self.x, fits), reserved=reserved)
+        return replace(self, x_ticks=choose(self.x, fits))
 
-    def _placed(self, ticks: Sequence[Tick], reserved: int) -> list[tuple[int, str]]:
+    def _placed(self, ticks: Sequence[Tick]) -> list[tuple[int, str]]:
         """Labels with their middles at most half a cell from their places; those that stick out are left out."""
         placed = []
         for tick in ticks:
             middle = (tick.fraction * (self.columns * DOTS_ACROSS - 1) - (DOTS_ACROSS - 1) / 2) / DOTS_ACROSS
             start = self.gutter + math.floor(middle - (len(tick.text) - 1) / 2 + 0.5)
-            if start >= 0 and start + len(tick.text) <= self.width - reserved:
+            if start >= self.left and start + len(tick.text) <= self.width - self.right:
                 placed.append((start, tick.text))
         return placed
 
@@ -104,17 +106,20 @@ def _with_footer(axis: Axis, x: Scale, y: Scale, width: int, height: int, footer
     gutter = max((len(tick.text) + 1 for tick in y_ticks.ticks), default=0)
     if width - gutter < FEWEST_COLUMNS:
         y_ticks, gutter = Ticks(), 0
-    frame = Frame(x, y, width - gutter, rows, gutter, footer, y_ticks, Ticks(), 0, 0)
-    title = len(axis.title) + _GAP if axis.title and footer == 1 else 0
+    title = len(axis.title) if footer == 1 else 0
+    left = title + 1 if 0 < title < gutter else 0
+    frame = Frame(x, y, width - gutter, rows, gutter, footer, y_ticks, Ticks(), left, 0, 0)
+    right = title + _GAP if title and not left else 0
     # One label alone gives no scale: rather lose the place of the title, some room between labels, a few columns.
     wide = _GAP + frame.columns // 20
-    for margin, reserved, gap in ((0, title, wide), (0, 0, wide), (1, 0, _GAP), (2, 0, _GAP), (3, 0, 1)):
-        if margin and frame.columns - margin < FEWEST_COLUMNS:
+    for margin, reserved, gap in ((0, right, wide), (0, 0, wide), (1, 0, _GAP), (2, 0, _GAP), (3, 0, 1)):
+        columns = frame.columns - margin
+        if margin and columns < FEWEST_COLUMNS:
             break
-        labelled = replace(frame, columns=frame.columns - margin, margin=margin).with_x_ticks(reserved, gap)
+        labelled = replace(frame, columns=columns, margin=margin, right=reserved).with_x_ticks(gap)
         if len(labelled.x_labels) > 1:
             return labelled
-    return frame.with_x_ticks(0, 1)
+    return frame.with_x_ticks(1)
 
 
 def _row_labels(y: Scale, rows: int) -> Ticks:

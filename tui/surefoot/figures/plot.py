@@ -134,7 +134,8 @@ def _composed(cells: list[list[str]], picture: Picture, frame: Frame, characters
     if frame.y_ticks.note and (hollow or not told):  # labels that nobody can read are none
         for row, text in frame.y_labels:
             lines[row][: len(text)] = " " * len(text)
-    told = _titled(lines[-1:], map(characters.text, _titles(picture.x, frame.x_ticks)), (frame.width, 0))
+    starts = (0,) if frame.left else (frame.width, 0)
+    told = _titled(lines[-1:], map(characters.text, _titles(picture.x, frame.x_ticks)), starts)
     if frame.x_ticks.note and not told:
         lines[frame.rows] = [" "] * frame.width
     return ["".join(line) for line in lines]

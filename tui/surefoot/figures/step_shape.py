@@ -57,7 +57,7 @@ def step_segments(step: StepShape) -> tuple[Segment, ...]:
     slope = place(step.slope)
     if step.landing is not None:
         ends.append((place(step.landing), 0.0))
-    elif slope and len(ends) == 1:
+    elif len(ends) == 1 and math.isfinite(slope) and slope != 0:
         ends.append((ends[0][0] - ends[0][1] / slope, 0.0))
     return tuple(Segment(*a, *b) for a, b in pairwise(sorted(ends)))
 
