@@ -81,9 +81,14 @@ class Room(Screen[None]):
     def styled(self, text: str, kind: Kind) -> Text:
         return Text(text, self.surefoot.style_of(kind))
 
+    @property
+    def composed(self) -> bool:
+        """Whether the widgets are there: a room that was left loses them, and gets new ones when it is shown again."""
+        return bool(self.query("#foot"))
+
     def redraw(self) -> None:
         """Draw everything again; only changed cells are sent."""
-        if not self.is_mounted or self.size.width == 0:
+        if not self.composed or self.size.width == 0:
             return
         self.query_one("#heading", Lines).show(self._heading())
         self.draw()
@@ -104,7 +109,7 @@ class Room(Screen[None]):
     def say(self, message: str, kind: Kind = "quiet") -> None:
         """Show one line in the message line until the next key."""
         self.message, self.message_kind = message, kind
-        if self.is_mounted:
+        if self.composed:
             self.redraw_foot()
 
     def _heading(self) -> list[Text]:

@@ -116,7 +116,7 @@ class TypingRoom(Room):
         return self.shown if same else None
 
     def context(self) -> tuple[str, str]:
-        place = self.view.place if self.is_mounted else None
+        place = self.view.place if self.composed else None
         right = Fault(place[0], "", place[1], place[2]).place if place else ""
         if self.shown is None:
             return "no problem yet" if self.typed.form.empty else "not accepted yet", right
