@@ -84,7 +84,7 @@ class Room(Screen[None]):
     @property
     def composed(self) -> bool:
         """Whether the widgets are there: a room that was left loses them, and gets new ones when it is shown again."""
-        return bool(self.query("#foot"))
+        return any(child.id == "foot" for child in self.children)
 
     def redraw(self) -> None:
         """Draw everything again; only changed cells are sent."""

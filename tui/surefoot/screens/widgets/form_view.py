@@ -49,6 +49,8 @@ class FormView(Container):
     def __init__(self) -> None:
         super().__init__()
         self.last_field = "equation"
+        self._heights: dict[str, int] = {}
+        self._labels: dict[str, str] = {}
 
     def compose(self) -> ComposeResult:
         with Horizontal(classes="row"):
@@ -181,12 +183,17 @@ class FormView(Container):
         equation = _between(self._lines("equation"), 1, max(height // 5, 1))
         wanted = max(self._lines("where"), self._lines("inputs")) + 1
         lists = _between(wanted, min(4, max(height - 8, 1)), max(height * 2 // 5 - 1, 1))
-        self.field("equation").styles.height = equation
+        heights = {"equation": equation, "where": lists, "inputs": lists}
+        for name, rows in heights.items():
+            if self._heights.get(name) != rows:  # asked for only then, since it lays out the whole screen
+                self.field(name).styles.height = rows
+        self._heights = heights
         for name in ("where", "inputs"):
-            self.field(name).styles.height = lists
             lines = self._lines(name)
-            more = f", {lines} lines" if lines > lists else ""
-            self.query_one(f"#{name}-label", Static).update(f" {name}{more}")
+            label = f" {name}, {lines} lines" if lines > lists else f" {name}"
+            if self._labels.get(name) != label:
+                self._labels[name] = label
+                self.query_one(f"#{name}-label", Static).update(label)
         return max(height - _LABEL_ROWS - equation - lists, 0)
 
     def _lines(self, name: str) -> int:
