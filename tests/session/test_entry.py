@@ -34,7 +34,8 @@ def test_a_line_is_canonical_and_its_hash_is_that_of_the_rest(content: dict[str,
     stored = members.pop("hash")
     assert stored == entry.hash == hashlib.sha256(canonical(members)).hexdigest()
     assert read_entry(line, 3, NO_HASH) == read_entry(line, 3, NO_HASH, strict=True) == entry
-    assert quick_check(line, 3, NO_HASH) == ("note_made", entry.hash)
+    escapes = b"\\u" in line  # of control characters: these lines are read the slow way
+    assert quick_check(line, 3, NO_HASH) == (None if escapes else ("note_made", entry.hash))
 
 
 @given(CONTENT)
@@ -73,6 +74,17 @@ def test_a_repeated_key_that_was_hashed_with_the_rest_is_refused_by_strict_readi
     forged = body[:place] + b',"hash":"' + digest + b'"' + body[place:]
     with pytest.raises(RecordError, match="a key stands twice"):
         read_entry(forged, 3, NO_HASH, strict=True)
+
+
+def test_half_a_surrogate_pair_that_was_hashed_as_it_stands_is_refused() -> None:
+    line = line_of({"text": "@"})
+    start, end = line.index(b',"hash"'), line.index(b',"kind"')
+    body = (line[:start] + line[end:]).replace(b'"@"', b'"\\ud800"')
+    place = body.rindex(b',"kind"')
+    forged = body[:place] + b',"hash":"' + hashlib.sha256(body).hexdigest().encode() + b'"' + body[place:]
+    with pytest.raises(RecordError, match="half a surrogate pair") as caught:
+        read_entry(forged, 3, NO_HASH)
+    assert caught.value.event == 3
 
 
 @pytest.mark.parametrize(

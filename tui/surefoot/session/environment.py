@@ -7,7 +7,6 @@ processor. So the values themselves are summed up too, as a digest over function
 from __future__ import annotations
 
 import getpass
-import importlib.metadata
 import math
 import os
 import platform
@@ -137,9 +136,11 @@ _FUNCTIONS: tuple[Callable[[float], float], ...] = (
 
 
 def _version(distribution: str) -> str:
+    from importlib import metadata  # a fifth of the time of starting, and only this needs it
+
     try:
-        return importlib.metadata.version(distribution)
-    except importlib.metadata.PackageNotFoundError:
+        return metadata.version(distribution)
+    except metadata.PackageNotFoundError:
         return "absent"
 
 

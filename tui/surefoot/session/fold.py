@@ -189,8 +189,9 @@ def _problem_of(state: SessionState, what: RunBegun) -> StatedProblem:
 def _stepped(state: SessionState, event: Event, what: StepTaken) -> SessionState:
     run = _in_hand(state)
     if what.iterate is None:
-        if what.ending is None or what.state is not None:
-            raise RecordError("a step without an iterate must end the run, and leaves the method's state as it was")
+        _check_goes_on(what.state, what.ending)
+        if what.state is not None:
+            raise RecordError("a step without an iterate leaves the method's state as it was")
         return _with_run(state, event, "the end of the run", _ended(run, what))
     steps = run.steps + 1
     return _with_run(state, event, f"step {steps}", _going_on(run, what, what.iterate, steps))
@@ -266,6 +267,8 @@ def _check_iterate(iterate: Iterate, k: int, *, by_hand: bool) -> None:
 def _check_goes_on(state: State | None, ending: Ending | None) -> None:
     if state is None and ending is None:
         raise RecordError("the run has no state to go on from, and has not ended")
+    if ending is not None and ending.outcome == "abandoned":
+        raise RecordError("only a person abandons a run, in an event of its own")
 
 
 def _in_hand(state: SessionState) -> Run:

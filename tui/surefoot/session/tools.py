@@ -21,8 +21,8 @@ class Tools:
     """A method and an arithmetic.
 
     Attributes:
-        reading: the arithmetic as far as decoding goes. For binary64 it is `float` itself, to the same bits and three
-            times as fast; that a text is also the one that would be written is for recomputing to find.
+        reading: the arithmetic as far as decoding goes. For binary64 it is `float`, to the same bits and three times
+            as fast; that a text is also the one that would be written is for recomputing to find.
     """
 
     method: Method
@@ -36,11 +36,17 @@ class _Reading:
     decode: Callable[[str], Real]
 
 
+def _binary64(text: str) -> float:
+    if type(text) is not str:
+        raise TypeError(f"{text!r} is no text")
+    return float(text)
+
+
 @cache
 def tools_for(method: str, arithmetic: str) -> Tools:
     """The method and the arithmetic of these codes. Raises PlanError or ProblemError when there are none."""
     chosen = arithmetic_of(arithmetic)
-    decode = float if chosen is BINARY64 else chosen.decode
+    decode = _binary64 if chosen is BINARY64 else chosen.decode
     return Tools(method_of(method), chosen, cast(Arithmetic, _Reading(chosen.kind, decode)))
 
 
