@@ -3,23 +3,17 @@
 from __future__ import annotations
 
 import time
-from collections.abc import AsyncIterator
-from contextlib import asynccontextmanager
 from pathlib import Path
-from typing import Any
 
 import pytest
-from textual import events
 
-from support.screens import BY, TAILRACE, program, screen_text, tailrace_session, wait_until
+from support.function_room import fill, function_room, paste, room_of, settle
+from support.screens import BY, TAILRACE, screen_text, tailrace_session, wait_until
 from surefoot.equation.problem import Input, Problem
-from surefoot.screens.app import SurefootApp
 from surefoot.screens.form import Form, form_of
-from surefoot.screens.function import FunctionRoom
-from surefoot.screens.typed import Typed, typed_of
+from surefoot.screens.typed import typed_of
 from surefoot.session.session import Session
 
-SIZE = (80, 24)
 COLEBROOK = "1/sqrt(f) = -2*log10(eps/(3.7*D) + 2.51/(Re*sqrt(f)))"
 PIPE = Form(
     title="Friction in the penstock",
@@ -29,48 +23,6 @@ PIPE = Form(
     equation=COLEBROOK,
     inputs="eps = 1e-4 m\nD = 0.9 m [0.8, 1.0]\nRe = 1e5",
 )
-
-
-@asynccontextmanager
-async def function_room(
-    folder: Path, *, size: tuple[int, int] = SIZE, session: Path | None = None, **options: Any
-) -> AsyncIterator[tuple[SurefootApp, Any, FunctionRoom]]:
-    """The program with the function room in front, and its pilot."""
-    app = program(folder, target=session, **options)
-    async with app.run_test(size=size) as pilot:
-        if session is not None:
-            await wait_until(pilot, lambda: app.session is not None)
-        app.go("function")
-        await wait_until(pilot, lambda: isinstance(app.screen, FunctionRoom) and app.screen.is_mounted)
-        await pilot.pause()
-        yield app, pilot, room_of(app)
-
-
-def room_of(app: SurefootApp) -> FunctionRoom:
-    room = app.rooms["function"]
-    assert isinstance(room, FunctionRoom)
-    return room
-
-
-async def fill(pilot: Any, room: FunctionRoom, form: Form, typed: Typed | None = None) -> None:
-    """Have texts in the fields as if they had been typed."""
-    room.begun = True
-    room.take(typed or Typed(form))
-    room.redraw()
-    await pilot.pause()
-
-
-async def settle(pilot: Any, app: SurefootApp) -> None:
-    """Let work in a thread end."""
-    await wait_until(pilot, lambda: not app.working)
-    await pilot.pause()
-
-
-def paste(room: FunctionRoom, text: str) -> None:
-    """Paste as a terminal does: one event, to the field that has the focus."""
-    focused = room.focused
-    assert focused is not None
-    focused.post_message(events.Paste(text))
 
 
 # -- opening --------------------------------------------------------------------------------------------------------
@@ -358,11 +310,11 @@ async def test_throwing_away_shows_the_problem_in_force_again(tmp_path: Path) ->
 
 
 async def test_a_paste_of_several_lines_is_one_change(tmp_path: Path) -> None:
-    async with function_room(tmp_path) as (_, pilot, room):
+    async with function_room(tmp_path) as (app, pilot, room):
         await fill(pilot, room, Form(equation="x = a"))
         room.view.enter_field("inputs")
         await pilot.pause()
-        paste(room, "a = 1\r\nb = 2\x1b[2J m\n")
+        paste(app, "a = 1\r\nb = 2\x1b[2J m\n")
         await wait_until(pilot, lambda: room.typed.form.inputs != "")
         assert room.typed.form.inputs == "a = 1\nb = 2\ufffd[2J m\n"
         await pilot.press("ctrl+underscore")
@@ -370,11 +322,11 @@ async def test_a_paste_of_several_lines_is_one_change(tmp_path: Path) -> None:
 
 
 async def test_a_paste_into_one_line_takes_its_first_line(tmp_path: Path) -> None:
-    async with function_room(tmp_path) as (_, pilot, room):
+    async with function_room(tmp_path) as (app, pilot, room):
         await fill(pilot, room, Form(equation="x"))
         room.view.enter_field("title")
         await pilot.pause()
-        paste(room, " Weir 3 \nsecond line")
+        paste(app, " Weir 3 \nsecond line")
         await wait_until(pilot, lambda: room.typed.form.title != "")
         assert room.typed.form.title == "Weir 3"
 
@@ -386,7 +338,7 @@ async def test_a_megabyte_does_not_hang_the_keys(tmp_path: Path, field: str) -> 
         room.view.enter_field(field)
         await pilot.pause()
         before = time.monotonic()
-        paste(room, "x+" * 500_000)
+        paste(app, "x+" * 500_000)
         await pilot.press("tab")
         await wait_until(pilot, lambda: room.view.place is not None and room.view.place[0] != field)
         assert time.monotonic() - before < 2.0
@@ -401,7 +353,7 @@ async def test_a_megabyte_does_not_hang_the_keys(tmp_path: Path, field: str) -> 
 async def test_what_the_form_does_not_show_is_said_and_stays(tmp_path: Path) -> None:
     problem = Problem("x", "x = a", admissible=("x > 0",), inputs=(Input("a", "1", uncertainty="0.1", source="log 3"),))
     async with function_room(tmp_path) as (app, pilot, room):
-        await fill(pilot, room, form_of(problem), typed_of(problem))
+        await fill(pilot, room, typed_of(problem))
         assert "kept too: admissible; uncertainty, source of a" in screen_text(app)
         room.view.enter_field("equation")
         await pilot.press("end", *"*2", "ctrl+s")
