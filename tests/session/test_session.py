@@ -658,6 +658,35 @@ def test_a_number_given_to_what_could_not_be_recorded_is_given_again(
     assert_on_disk(session)
 
 
+@pytest.mark.parametrize("written", [True, False])
+def test_after_a_write_that_a_signal_broke_off_the_file_decides(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch, written: bool
+) -> None:
+    session = begun(tmp_path / "a.json")
+    assert session._record is not None
+    append = session._record.append
+
+    def broken_off(lines: list[bytes]) -> None:
+        if written:
+            append(lines)
+        raise KeyboardInterrupt
+
+    with monkeypatch.context() as patched:
+        patched.setattr(session._record, "append", broken_off)
+        with pytest.raises(KeyboardInterrupt):
+            session.do(TakeSteps())
+    on_disk = session.path.read_bytes()
+    with pytest.raises(RecordError, match="a write was broken off before; open the session again"):
+        session.do(TakeSteps())
+    assert session.path.read_bytes() == on_disk
+    session.close()
+    with Session.open(session.path, by="M. R.") as again:
+        assert again.state.run is not None
+        assert again.state.run.steps == written
+        again.do(TakeSteps())
+        assert_on_disk(again)
+
+
 def test_text_that_cannot_be_recorded_is_refused_in_one_line(tmp_path: Path) -> None:
     session = begun(tmp_path / "a.json")
     with pytest.raises(RecordError, match="half a surrogate pair"):

@@ -80,6 +80,7 @@ class Session:
         self._by, self._now = by, now
         self._record, self._lock = record, lock
         self._resumed = False
+        self._writing = False
         self._solver = Solver()
 
     @classmethod
@@ -186,9 +187,10 @@ class Session:
 
     def refusal(self, command: type[Command]) -> Refused | None:
         """Why a command cannot be done now, None when it can."""
+        if self.holder is not None:
+            return Refused(f"the session is held by {self.holder}", "close it there and open it again, or take it over")
         if self._record is None:
-            who = f"held by {self.holder}" if self.holder else "open for reading only"
-            return Refused(f"the session is {who}", "close it there and open it again, or take it over")
+            return Refused("the session is open for reading only", "open it again where and when it can be written")
         return refusal(self.state, command)
 
     def do(self, command: Command, stop: Stop | None = None, on_step: OnStep | None = None) -> tuple[Event, ...]:
@@ -306,11 +308,19 @@ class Session:
         """To disk, and only then into the state. Raises RecordError; nothing of the batch is kept then."""
         assert self._record is not None, "a session that is open for reading only refuses every command"
         assert self._lock is not None, "what can be written is locked"
-        self._lock.check()
-        self._record.append(batch.lines)
+        if self._writing:  # broken off by a signal: whether the events are on disk, only the file knows
+            raise RecordError("a write was broken off before; open the session again", file=str(self.path))
+        self._writing = True
+        try:
+            self._lock.check()
+            self._record.append(batch.lines)
+        except RecordError:
+            self._writing = False
+            raise
         self.state = batch.state
         self._events += batch.events
         self._resumed = True
+        self._writing = False
 
     def _run_in_hand(self) -> Run:
         run = self.state.run
