@@ -13,6 +13,7 @@ from hypothesis import given
 from hypothesis import strategies as st
 
 from support.sessions import DEPTH, NEWTON, QUADRATIC, SECANT, begun, chained, members_of, sealed, ticking
+from surefoot.equation.problem import Problem
 from surefoot.errors import RecordError
 from surefoot.methods.contract import Ending, Iterate, Spent
 from surefoot.methods.plan import Control, Plan, Stop
@@ -88,6 +89,16 @@ def test_every_event_is_told_in_a_few_words(varied: Session) -> None:
         "session_resumed: ",
         "note_made: looked",
     ]
+
+
+def test_an_ending_and_a_failure_are_told_too(tmp_path: Path) -> None:
+    with begun(tmp_path / "a.json", QUADRATIC, replace(SECANT, start=("0", "2"))) as session:
+        session.do(TakeSteps())
+        assert summary_of(session.events()[-1]) == "broke_down"
+    with begun(tmp_path / "b.json", Problem("x", "ln(x) = 1"), replace(SECANT, start=("1", "2"))) as session:
+        session.do(PutIterate("-1", "outside"))
+        words = summary_of(session.events()[-1])
+        assert words == "k = 2: x = -1, outside the domain: ln(x) at -1.0 (outside); failed_evaluation"
 
 
 NUMBERS = st.floats(width=64)

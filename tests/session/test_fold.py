@@ -7,11 +7,11 @@ from pathlib import Path
 
 import pytest
 
-from support.sessions import SECANT, begun, prefixes, undo_chain, wandering
+from support.sessions import NEWTON, SECANT, begun, prefixes, undo_chain, wandering
 from surefoot.errors import RecordError
-from surefoot.session.commands import AddNote, TakeSteps, Withdraw
+from surefoot.session.commands import AddNote, BeginVariant, TakeSteps, Withdraw
 from surefoot.session.entry import NO_HASH
-from surefoot.session.events import Event, NoteMade, RunAbandoned, RunTakenUp, SessionOpened, Withdrawn
+from surefoot.session.events import Event, NoteMade, RunAbandoned, RunBegun, RunTakenUp, SessionOpened, Withdrawn
 from surefoot.session.fold import EMPTY, apply, fold
 
 
@@ -101,3 +101,15 @@ def test_the_problem_of_a_title_of_its_own_gives_the_session_its_title(events: l
     assert fold(events[:1]).title == ""
     assert fold(events[:2]).title == "Two roots"
     assert fold(events).runs[0].plan == SECANT
+
+
+def test_a_variant_of_an_iterate_that_is_not_there_is_refused(tmp_path: Path) -> None:
+    with begun(tmp_path / "a.json") as session:
+        session.do(BeginVariant(1, 1, NEWTON))
+        events = list(session.events())
+    begun_event = events[-1]
+    assert isinstance(begun_event.what, RunBegun)
+    for parent, says in (((1, 2), "run 1 has no iterate 2"), ((3, 0), "there is no run 3")):
+        wrong = replace(begun_event, what=replace(begun_event.what, parent=parent))
+        with pytest.raises(RecordError, match=says):
+            apply(fold(events[:-1]), wrong)

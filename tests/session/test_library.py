@@ -105,7 +105,7 @@ def test_a_cut_file_is_listed_by_its_whole_events(tmp_path: Path) -> None:
     assert (summarise(session.path).steps, summarise(session.path).fault) == (2, "")
 
 
-@pytest.mark.parametrize("harm", ["unknown kind", "bad content", "not allowed"])
+@pytest.mark.parametrize("harm", ["unknown kind", "bad content", "bad ending", "not allowed"])
 def test_what_only_folding_can_refuse_is_listed_with_its_fault(tmp_path: Path, harm: str) -> None:
     with begun(tmp_path / "a.json") as session:
         session.do(TakeSteps(1))
@@ -113,6 +113,8 @@ def test_what_only_folding_can_refuse_is_listed_with_its_fault(tmp_path: Path, h
     if harm == "unknown kind":
         events[3]["kind"] = "finding_made"
     elif harm == "bad content":
+        events[3]["content"] = "x"
+    elif harm == "bad ending":
         events[3]["content"] = {"ending": []}
     else:
         events[2] = {**events[2], "kind": "withdrawn", "content": {"of": 1}}

@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import errno
+import fcntl
 import json
 import os
 import subprocess
@@ -134,3 +136,40 @@ def test_a_session_that_is_not_there_cannot_be_locked(tmp_path: Path) -> None:
     with pytest.raises(RecordError, match="there is no such file"):
         acquire(tmp_path / "none.json", myself("M. R.", NOW))
     assert list(tmp_path.iterdir()) == []
+
+
+def test_a_folder_in_which_no_sidecar_can_be_made_is_told(session: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def denied(*given: object) -> None:
+        raise OSError(errno.EROFS, "Read-only file system")
+
+    monkeypatch.setattr("surefoot.session.lock._write_new", denied)
+    with pytest.raises(RecordError, match="cannot be locked: the file system is read-only"):
+        acquire(session, myself("M. R.", NOW))
+
+
+def test_a_system_without_advisory_locks_and_process_files_has_the_sidecar(
+    session: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    monkeypatch.setitem(sys.modules, "fcntl", None)
+    read = Path.read_text
+    monkeypatch.setattr(
+        Path, "read_text", lambda path, **how: read(path / "none" if "proc" in path.parts else path, **how)
+    )
+    me = myself("M. R.", NOW)
+    assert (me.boot, me.started) == ("", "")
+    first = acquire(session, me)
+    with pytest.raises(Held):
+        acquire(session, myself("A. N.", NOW))
+    assert not is_gone(replace(me, pid=os.getppid()), me)
+    first.release()
+
+
+def test_a_network_file_system_without_locks_has_the_sidecar(session: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    def none(descriptor: int, how: int) -> None:
+        raise OSError(errno.ENOLCK, "No locks available")
+
+    monkeypatch.setattr(fcntl, "flock", none)
+    first = acquire(session, myself("M. R.", NOW))
+    with pytest.raises(Held):
+        acquire(session, myself("A. N.", NOW))
+    first.release()

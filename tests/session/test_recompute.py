@@ -295,3 +295,24 @@ def test_recomputing_is_stopped_when_asked_and_says_so(tmp_path: Path) -> None:
 def test_recomputing_asks_the_environment_of_now(path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
     monkeypatch.setattr(recompute_module, "environment", lambda: replace(environment(), libm="glibc 9"))
     assert recompute(path).elsewhere == (), "nothing differs, so where it was recorded says nothing"
+
+
+def test_differences_that_are_not_all_numbers_are_counted(tmp_path: Path) -> None:
+    with begun(tmp_path / "a.json") as session:
+        session.do(TakeSteps(2))
+    events = members_of(session.path)
+    for count in range(2):
+        step_of(events, count)["iterate"]["account"]["shape"] = "tangent"
+    session.path.write_bytes(chained(events))
+    words = recompute(session.path).first_difference
+    assert words == ("event 3, run 1, shape of iterate 2: recorded tangent, recomputed chord; 2 of 2 steps differ")
+
+
+def test_what_is_missing_is_told_as_nothing(tmp_path: Path) -> None:
+    with begun(tmp_path / "a.json") as session:
+        session.do(TakeSteps(1))
+    events = members_of(session.path)
+    del step_of(events, 0)["iterate"]["raw"]
+    session.path.write_bytes(chained(events))
+    done = recompute(session.path)
+    assert str(done.first) == "event 3, run 1, raw of iterate 2: recorded nothing, recomputed 1.0"

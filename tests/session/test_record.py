@@ -5,6 +5,7 @@ from __future__ import annotations
 import errno
 import json
 import os
+import stat
 from collections.abc import Sequence
 from pathlib import Path
 
@@ -335,3 +336,43 @@ def test_where_a_layout_ends_is_where_the_closing_belongs() -> None:
     data = document(tuple(lines))
     assert data[lay_out(data).end :] == CLOSING
     assert data[: lay_out(data[:-2]).end] == data[: -len(CLOSING)]
+
+
+def test_a_file_that_cannot_be_put_in_order_stays_as_it_is(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    _, lines = chain(3)
+    path = tmp_path / "a.json"
+
+    def fail(*given: object) -> None:
+        raise OSError(errno.ENOSPC, "No space left on device")
+
+    torn = document(tuple(lines))[:-20]
+    spread = json.dumps(json.loads(document(tuple(lines)))).encode()
+    for data, says in ((torn, "cannot be put in order: the disk is full"), (spread, "cannot be opened for writing")):
+        path.write_bytes(data)
+        whole = Entries(data)
+        count = len(list(whole))
+        with monkeypatch.context() as patched:
+            patched.setattr(os, "fsync", fail)
+            with pytest.raises(RecordError, match=says):
+                Record.open(path, whole.layout)
+        assert len(read(path.read_bytes())) == count
+        assert not list(tmp_path.glob("*.part"))
+
+
+def test_a_folder_that_cannot_be_synced_is_no_reason_to_fail_but_a_disk_error_is(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    _, lines = chain(1)
+    sync, code = os.fsync, [errno.EINVAL]
+
+    def of_files(descriptor: int) -> None:
+        if stat.S_ISDIR(os.fstat(descriptor).st_mode):
+            raise OSError(code[0], os.strerror(code[0]))
+        sync(descriptor)
+
+    monkeypatch.setattr(os, "fsync", of_files)
+    Record.create(tmp_path / "a.json", lines).close()
+    code[0] = errno.EIO
+    with pytest.raises(RecordError, match="the disk reports an error"):
+        Record.create(tmp_path / "b.json", lines)
+    assert [path.name for path in tmp_path.iterdir()] == ["a.json"]

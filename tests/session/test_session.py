@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 import errno
+import gc
 import itertools
 import json
 import os
@@ -31,6 +32,7 @@ from surefoot.equation.problem import Problem
 from surefoot.equation.results import Failure
 from surefoot.errors import PlanError, ProblemError, RecordError, Refused
 from surefoot.methods.plan import Plan, Stop
+from surefoot.session import loading as loading_module
 from surefoot.session import session as session_module
 from surefoot.session.commands import (
     Abandon,
@@ -721,3 +723,67 @@ def test_the_method_revision_is_recorded(tmp_path: Path) -> None:
     what = session.events()[2].what
     assert isinstance(what, RunBegun)
     assert what.revision == 1
+
+
+def test_a_session_whose_lock_cannot_be_taken_is_not_left_behind(
+    tmp_path: Path, monkeypatch: pytest.MonkeyPatch
+) -> None:
+    def denied(*given: object, **how: object) -> None:
+        raise RecordError("cannot be locked: the disk is full")
+
+    monkeypatch.setattr(session_module, "acquire", denied)
+    with pytest.raises(RecordError, match="cannot be locked"):
+        Session.create(tmp_path / "a.json", by="M. R.")
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_a_session_that_cannot_be_read_is_not_left_locked(tmp_path: Path) -> None:
+    path = tmp_path / "a.json"
+    begun(path).close()
+    path.write_bytes(path.read_bytes().replace(b"Two roots", b"Two r00ts"))
+    with pytest.raises(RecordError, match="event 1: was changed after it was written"):
+        Session.open(path, by="A. N.")
+    assert [each.name for each in tmp_path.iterdir()] == ["a.json"]
+    with pytest.raises(RecordError, match="there is no such file"):
+        Session.open(tmp_path / "none.json", by="A. N.")
+
+
+def test_a_name_is_needed(tmp_path: Path) -> None:
+    with pytest.raises(RecordError, match="does not say by whom it is"):
+        Session.create(tmp_path / "a.json", by=" ")
+    assert list(tmp_path.iterdir()) == []
+
+
+def test_a_bracketing_variant_without_a_sign_change_has_ended_at_once(tmp_path: Path) -> None:
+    session = begun(tmp_path / "a.json", QUADRATIC, Plan("secant", ("4", "5"), stop=TIGHT))
+    session.do(BeginVariant(1, 1, BISECTION))
+    assert session.state.run is not None
+    assert session.state.run.ending is not None
+    assert session.state.run.ending.outcome == "broke_down"
+    logarithm = Plan("secant", ("2", "1"), stop=TIGHT)
+    session = begun(tmp_path / "b.json", Problem("x", "ln(x) = 1"), logarithm)
+    session.do(PutIterate("-1", "outside"))
+    session.do(BeginVariant(1, 2, BISECTION))
+    assert session.state.run is not None
+    assert session.state.run.ending is not None
+    assert session.state.run.ending.outcome == "failed_evaluation"
+    with pytest.raises(ValueError, match="no state to step from"):
+        session.state.run.progress()
+
+
+def test_folding_leaves_the_search_for_garbage_as_it_was(tmp_path: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    path = tmp_path / "a.json"
+    begun(path).close()
+    frozen: list[bool] = []
+    monkeypatch.setattr(gc, "freeze", lambda: frozen.append(gc.isenabled()))
+    load(path)
+    assert (frozen, gc.isenabled()) == ([], True)
+    monkeypatch.setattr(loading_module, "_MANY_OBJECTS", -1)
+    load(path)
+    assert (frozen, gc.isenabled()) == ([False], True)
+    gc.disable()
+    try:
+        load(path)
+        assert not gc.isenabled()
+    finally:
+        gc.enable()

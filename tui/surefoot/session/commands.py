@@ -48,7 +48,8 @@ class PutIterate:
 class BeginVariant:
     """A run that begins at iterate k of run `run` (counted from 1) under a changed plan.
 
-    The starts of `plan` are replaced: the last iterates up to k, as many as the method needs, to the bit.
+    The starts of `plan` are replaced: the last iterates up to k, as many as the method needs, to the bit; for a
+    bracketing method iterate k and the last one before it where f has the other sign. The problem is that of the run.
     """
 
     run: int

@@ -273,8 +273,7 @@ def _check_goes_on(state: State | None, ending: Ending | None) -> None:
 
 def _in_hand(state: SessionState) -> Run:
     run = state.run
-    if run is None:
-        raise RecordError("there is no run in hand")
+    assert run is not None, "the table of transitions asks for it"
     return run
 
 

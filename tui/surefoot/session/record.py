@@ -110,11 +110,6 @@ class Record:
                 raise _failed("was cut by a crash and cannot be put in order", path, error) from error
         return record
 
-    @property
-    def descriptor(self) -> int:
-        """The open file, for an advisory lock on it."""
-        return self._descriptor
-
     def append(self, lines: Sequence[bytes]) -> None:
         """Add events in one write, and see them to disk.
 

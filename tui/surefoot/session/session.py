@@ -50,6 +50,7 @@ GROUP_STEPS = 500
 """Steps that follow one another are written and synced together: when one of these is reached."""
 
 OnStep: TypeAlias = Callable[[SessionState], None]
+_Single: TypeAlias = StateProblem | BeginRun | BeginVariant | PutIterate | TakeUp | Abandon | AddNote | Withdraw
 
 
 class Session:
@@ -234,8 +235,8 @@ class Session:
             raise refused
         return self._solver.landings(self._run_in_hand(), codes, stop)
 
-    def _what(self, command: Command, stop: Stop | None) -> Happening | None:
-        """What a command other than TakeSteps does; None when it was stopped before it did anything."""
+    def _what(self, command: _Single, stop: Stop | None) -> Happening | None:
+        """What a command of one event does; None when it was stopped before it did anything."""
         state = self.state
         match command:
             case StateProblem():
@@ -255,8 +256,6 @@ class Session:
             case Withdraw():
                 assert state.before is not None, "the table of transitions asks for it"
                 return Withdrawn(state.before.events)
-            case TakeSteps():
-                raise AssertionError("steps are taken by _take_steps")
 
     def _take_steps(self, command: TakeSteps, stop: Stop | None, on_step: OnStep | None) -> tuple[Event, ...]:
         """Steps in groups; each group is on disk before it is shown."""
