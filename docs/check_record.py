@@ -15,7 +15,7 @@ import json
 import re
 import sys
 
-TIME = re.compile(r"\d{4}-(0[1-9]|1[0-2])-(0[1-9]|[12]\d|3[01])T([01]\d|2[0-3]):[0-5]\d:[0-5]\d\.\d{3}Z")
+TIME = re.compile(r"\d{4}-(0[1-9]|1[0-2])-(0[1-9]|[12]\d|3[01])T([01]\d|2[0-3]):[0-5]\d:[0-5]\d\.\d{3}Z", re.ASCII)
 HASH = re.compile(r"[0-9a-f]{64}")
 NUMBER = re.compile(r"(f32:|mp[0-9]+:)?(nan|-?inf|-?[0-9]+(\.[0-9]+)?(e[+-]?[0-9]+)?)")
 DEEPEST = 100

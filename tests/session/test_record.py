@@ -376,3 +376,37 @@ def test_a_folder_that_cannot_be_synced_is_no_reason_to_fail_but_a_disk_error_is
     with pytest.raises(RecordError, match="the disk reports an error"):
         Record.create(tmp_path / "b.json", lines)
     assert [path.name for path in tmp_path.iterdir()] == ["a.json"]
+
+
+@pytest.mark.parametrize(
+    "spread",
+    [
+        lambda data: data.replace(b"},\n{", b"}, {"),
+        lambda data: data.replace(b"},\n{", b"},  \n{"),
+        lambda data: data.replace(b"},\n{", b"}, {")[:-1],
+        lambda data: data.replace(b',"by"', b',\n "by"'),
+        lambda data: data.replace(b',"kind"', b' , "kind"').replace(b'"prev":"', b'"prev": "'),
+    ],
+    ids=["one line", "spaces at the ends", "one line, no last line end", "members in lines", "spaces inside"],
+)
+def test_other_spaces_behind_our_own_first_line_lose_no_event(tmp_path: Path, spread: object) -> None:
+    assert callable(spread)
+    entries, lines = chain(4)
+    path = tmp_path / "a.json"
+    path.write_bytes(spread(document(tuple(lines))))
+    whole = Entries(path.read_bytes())
+    assert list(whole) == entries
+    Record.open(path, whole.layout).close()
+    assert read(path.read_bytes()) == entries
+    assert not torn_path(path).exists()
+
+
+def test_another_kind_of_file_is_told_without_parsing_it(monkeypatch: pytest.MonkeyPatch) -> None:
+    monkeypatch.setattr("surefoot.session.layout.parse_json", lambda *given, **how: pytest.fail("it was parsed"))
+    with pytest.raises(RecordError, match="is no session file"):
+        lay_out(b'{"rows": [' + b"1," * 1000 + b"1]}")
+
+
+def test_a_time_is_written_in_plain_digits() -> None:
+    with pytest.raises(RecordError, match="'at' of the wrong form"):
+        seal(0, "２026-12-01T14:02:11.318Z", "M. R.", "note_made", {}, NO_HASH)

@@ -17,7 +17,7 @@ NO_HASH = "0" * 64
 """`prev` of event 0."""
 
 _MEMBERS = frozenset({"n", "at", "by", "kind", "content", "prev", "hash"})
-_TIME = re.compile(r"\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d\.\d{3}Z")
+_TIME = re.compile(r"\d{4}-\d\d-\d\dT\d\d:\d\d:\d\d\.\d{3}Z", re.ASCII)
 _KIND = re.compile(r"[a-z][a-z_]*")
 _HASH = re.compile(r"[0-9a-f]{64}")
 

@@ -25,6 +25,7 @@ SEPARATOR = b",\n"
 CLOSING = b"\n]}\n"
 
 # Inside a JSON string the quotes would be escaped: this is the end of an event and nothing else.
+_PREV = b'"prev":"'
 _EVENT_END = re.compile(rb'"prev":"[0-9a-f]{64}"\}')
 _REMAINS = re.compile(rb"[\s,\]}{]*")
 
@@ -55,21 +56,38 @@ def lay_out(data: bytes) -> Layout:
     Raises:
         RecordError: this is no session file, or one of a newer version.
     """
-    if data.startswith(HEADER):
-        if data.endswith(CLOSING):
-            body = data[len(HEADER) : -len(CLOSING)]
-            return Layout(tuple(body.split(SEPARATOR)), len(data) - len(CLOSING))
-        return _torn(data)
-    return lay_out_again(data)
+    if not data.startswith(HEADER):
+        return _lay_out_again(data)
+    layout = _lines(data) if data.endswith(CLOSING) else _torn(data)
+    if _is_one_event_a_line(layout, data):
+        return layout
+    try:
+        return _lay_out_again(data)
+    except RecordError:  # then it is damaged, and its lines tell where
+        return layout
 
 
-def lay_out_again(data: bytes) -> Layout:
+def _lines(data: bytes) -> Layout:
+    body = data[len(HEADER) : -len(CLOSING)]
+    return Layout(tuple(body.split(SEPARATOR)), len(data) - len(CLOSING))
+
+
+def _is_one_event_a_line(layout: Layout, data: bytes) -> bool:
+    """False when another program may have written the file again, from its first event on."""
+    breaks = data.count(b"\n", len(HEADER), layout.end)
+    ends = data.count(_PREV, len(HEADER), layout.end)
+    return breaks == len(layout.lines) - 1 and ends == len(layout.lines) and _EVENT_END.search(layout.tail) is None
+
+
+def _lay_out_again(data: bytes) -> Layout:
     """The events of a session file that another program wrote again, with other spaces and line ends.
 
     Raises:
         RecordError: as `lay_out`.
     """
     try:
+        if FORMAT.encode() not in data:  # before the time is taken that parsing a large file costs
+            raise ValueError("another kind of file")
         whole: Any = parse_json(data, unique=True)
     except ValueError as error:
         raise RecordError("is no session file of surefoot") from error

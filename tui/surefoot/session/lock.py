@@ -52,10 +52,16 @@ class Held(RecordError):
 
 
 class Lock:
-    """A held lock. `notice` says what had to be done to get it; empty in the usual case."""
+    """A held lock.
 
-    def __init__(self, path: Path, descriptor: int, inode: tuple[int, int], notice: str) -> None:
-        self.path, self.notice = path, notice
+    Attributes:
+        path: the sidecar.
+        notice: what had to be done to get the lock; empty in the usual case.
+    """
+
+    def __init__(self, session: Path, descriptor: int, inode: tuple[int, int], notice: str) -> None:
+        self.path, self.notice = lock_path(session), notice
+        self._session = session
         self._descriptor = descriptor
         self._inode = inode
 
@@ -64,7 +70,7 @@ class Lock:
         if not self._still_ours():
             other = read_holder(self.path)
             says = f"was taken over by {other}" if other else "has lost its lock"
-            raise RecordError(f"{says}; nothing more is written from here, open it again", file=str(self.path))
+            raise RecordError(f"{says}; nothing more is written from here, open it again", file=str(self._session))
 
     def release(self) -> None:
         if self._still_ours():
@@ -110,7 +116,7 @@ def acquire(session: Path, me: Holder, *, take_over: bool = False) -> Lock:
     except RecordError:
         os.close(descriptor)
         raise
-    return Lock(lock_path(session), descriptor, inode, notice)
+    return Lock(session, descriptor, inode, notice)
 
 
 def _take_sidecar(session: Path, me: Holder, *, free: bool, take_over: bool) -> tuple[tuple[int, int], str]:
