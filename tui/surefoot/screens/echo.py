@@ -110,7 +110,7 @@ def _fault_block(reading: Reading, form: Form, space: Space) -> list[Said]:
     fault = reading.fault
     if fault is None or fault.missing in reading.nameless or (fault.field == "unknown" and reading.proposed):
         return []  # the names without a value say it all
-    lines = [Said(line, "alert") for line in _labelled("open", wrap(space.characters.text(str(fault)), space.room))]
+    lines = [Said(line) for line in _labelled("open", wrap(space.characters.text(str(fault)), space.room))]
     text = getattr(form, fault.field).split("\n")[fault.line - 1 :] if fault.field else []
     if text and text[0].strip() and fault.column:
         lines += [Said(" " * GUTTER + line) for line in marked(text[0], fault.column, space)]

@@ -46,6 +46,8 @@ class Lines(Widget):
     def _strip(self, line: Text | str) -> Strip:
         if isinstance(line, str):
             return Strip([Segment(line)])
+        if not line.spans:  # rendering such a text leaves its own style out
+            return Strip([Segment(line.plain, self.app.console.get_style(line.style))])
         return Strip(list(line.render(self.app.console)))
 
     def render_line(self, y: int) -> Strip:
