@@ -144,6 +144,17 @@ async def test_a_draft_that_cannot_be_written_is_said_and_typing_goes_on(tmp_pat
         assert room.view.form.equation == "x"
 
 
+async def test_a_withdrawn_problem_is_in_the_draft(tmp_path: Path) -> None:
+    session = tailrace_session(tmp_path, plan=None)
+    async with function_room(tmp_path, session=session) as (_, pilot, _room):
+        await pilot.press("backspace", "ctrl+q")
+        await pilot.pause()
+    async with function_room(tmp_path, session=session) as (app, _, room):
+        assert app.session is not None
+        assert app.session.state.stated is None
+        assert room.typed == typed_of(TAILRACE)
+
+
 # -- from outside ---------------------------------------------------------------------------------------------------
 
 

@@ -66,17 +66,19 @@ class FunctionRoom(TypingRoom):
         self.app.push_screen(Page(lines))
 
     def do_discard(self) -> None:
+        before = typed_of(self.shown.problem) if self.shown is not None else Typed(Form())
+
         def chosen(index: int | None) -> None:
             if index == 1:
                 self.begun = False
-                self.take(typed_of(self.shown.problem) if self.shown is not None else Typed(Form()))
+                self.take(before)
                 self.drop_draft()
                 self.redraw()
 
-        if self.typed.changed:
-            self.app.push_screen(Choose("Throw away what is typed?", ("keep it", "throw it away")), chosen)
-        else:
+        if self.typed.form == before.form and not self.typed.editor_text:
             self.say("nothing is typed that was not accepted")
+        else:
+            self.app.push_screen(Choose("Throw away what is typed?", ("keep it", "throw it away")), chosen)
 
     # -- a file -----------------------------------------------------------------------------------------------------
 
@@ -110,17 +112,17 @@ class FunctionRoom(TypingRoom):
 
         def chosen(index: int | None) -> None:
             if index == 1:
-                self._take_text(read, f"{path.name} is read; a accepts it")
+                self._take_text(read, f"{path.name} is read; a accepts it", loose=False)
 
-        if self.typed.changed:
+        if self.unsaved:
             question = "There is half-typed text:"
             self.app.push_screen(Choose(question, ("keep it", f"replace it by {path.name}")), chosen)
         else:
             chosen(1)
 
-    def _take_text(self, read: TextRead, said: str) -> None:
-        """Take over the text of a problem file, from wherever it came."""
-        self.take(read.typed)
+    def _take_text(self, read: TextRead, said: str, *, loose: bool) -> None:
+        """Take over the text of a problem file, `loose` when no file holds it."""
+        self.take(read.typed, loose=loose)
         self.surefoot.take_plan_of_file(read.plan, read.arithmetic)
         self.keep_draft()
         self.redraw()
@@ -215,7 +217,8 @@ class FunctionRoom(TypingRoom):
             self._edit_again(saved, f"{error}; e goes on with the text")
             return
         self.begun = True
-        self._take_text(replace(read, typed=replace(read.typed, readings=self.typed.readings)), "taken from the editor")
+        typed = replace(read.typed, readings=self.typed.readings)
+        self._take_text(replace(read, typed=typed), "taken from the editor", loose=True)
 
     def _edit_again(self, text: str, why: str) -> None:
         """Keep the editor's text for the next time, and say why it was not taken over."""
@@ -236,6 +239,7 @@ class FunctionRoom(TypingRoom):
                 self.view.go_to(fault)
                 self.say(str(fault), "alert")
         elif self.shown is not None and self.shown.problem == problem:
+            self.take(typed_of(problem))
             self.drop_draft()
             self.surefoot.go("method")
             self.surefoot.tell(f"problem {self.shown.number} is in force as it was; nothing changed")

@@ -60,7 +60,9 @@ class TypingRoom(Room):
         self.shown: StatedProblem | None = None
         self._read_later: Timer | None = None
         self._draft_later: Timer | None = None
+        self._asked_for_draft = False
         self._drafted = False  # whether the draft on disk is ours to remove
+        self._loose = False  # whether the fields hold an unedited problem that stands nowhere else
 
     def compose_body(self) -> ComposeResult:
         yield Lines(id="ways")
@@ -73,22 +75,35 @@ class TypingRoom(Room):
         return self.query_one(FormView)
 
     def on_mount(self) -> None:
-        """Fill the fields, which are new whenever the room is shown again, and take up a draft."""
+        """Fill the fields, which are new whenever the room is shown again; the first time, take up a draft."""
         self._read_later = self._draft_later = None
-        self.take(self.typed)
+        self.take(self.typed, loose=self._loose)
         self._follow_session()
-        draft = self._draft()
-        kept = draft.load() if draft is not None and not self.locked else None
-        typed = typed_from(kept) if kept is not None else None
-        if typed is not None and typed.changed:
-            self._drafted = True
-            self.take(typed)
-            self.say("half-typed text was taken up again; x throws it away")
+        if not self._asked_for_draft and not self.locked:
+            self._asked_for_draft = True
+            self._take_up_draft()
         self.redraw()
 
-    def take(self, typed: Typed) -> None:
-        """Put texts into the fields."""
-        self.typed = typed
+    def _take_up_draft(self) -> None:
+        draft = self._draft()
+        kept = draft.load() if draft is not None else None
+        if kept is not None and typed_from(kept) != self.typed:
+            self._drafted = True
+            self.take(typed_from(kept), loose=True)
+            self.say("half-typed text was taken up again; x throws it away")
+
+    @property
+    def unsaved(self) -> bool:
+        """Whether the fields hold something that only the draft would keep."""
+        return self.typed.changed or self._loose
+
+    def take(self, typed: Typed, *, loose: bool = False) -> None:
+        """Put texts into the fields.
+
+        Args:
+            loose: they stand nowhere else, neither in the record nor in a file.
+        """
+        self.typed, self._loose = typed, loose
         self.view.show(typed.form)
         self.read_now()
 
@@ -103,7 +118,9 @@ class TypingRoom(Room):
         stated = self.state.stated if self.state is not None else None
         if stated is self.shown:
             return
-        if stated is not None and not self.typed.changed:
+        if stated is None:
+            self._loose = True  # what was withdrawn stays in the fields
+        elif not self.unsaved:
             self.take(typed_of(stated.problem))
         self.shown = stated
 
@@ -186,7 +203,7 @@ class TypingRoom(Room):
         if form != self.typed.form:
             if form.unknown != self.typed.form.unknown:
                 self.say(f"{form.unknown} is taken as the unknown: it alone has no value")
-            self.take(replace(self.typed, form=form))
+            self.take(replace(self.typed, form=form), loose=self._loose)
         self.redraw()
 
     def read_now(self) -> None:
@@ -215,10 +232,10 @@ class TypingRoom(Room):
         if self.surefoot.rooms.get(self.place) is not self or self.locked:
             return
         try:
-            if self.typed.changed:
+            if self.unsaved:
                 self.surefoot.folder.mkdir(parents=True, exist_ok=True)
             draft = self._draft()
-            if draft is not None and self.typed.changed:
+            if draft is not None and self.unsaved:
                 draft.save(draft_of(self.typed))
                 self._drafted = True
             else:
