@@ -83,7 +83,7 @@ def full_echo(
     if accepted is not None:
         blocks += [_derivative_lines(accepted, each, space, _NO_LIMIT) for each in accepted.derivatives]
     words = [line for each in readings for line in wrap(space.characters.text(each), space.room)]
-    blocks.append([Said(line) for line in _labelled("from paste", words)])
+    blocks.append([Said(line) for line in _labelled("paste", words)])
     return [line for block in blocks if block for line in (*block, Said(""))]
 
 
@@ -150,7 +150,7 @@ def _tree_lines(label: str, tree: Equation | Expression, space: Space, height: i
 
 def _derivative_lines(stated: StatedProblem, derivative: Derivative, space: Space, height: int) -> list[Said]:
     """A derivative as it was recorded, with the definitions that it brings along and its gaps."""
-    order, unknown = "" if derivative.order == 1 else f"^{derivative.order}", stated.problem.unknown
+    order, unknown = "" if derivative.order == 1 else str(derivative.order), stated.problem.unknown
     label = f"d{order}{'' if unknown == 'f' else 'f'}/d{unknown}{order}"
     said = _recorded(label, derivative.text, space, height)
     for definition in derivative.where:
@@ -175,4 +175,7 @@ def _fitted(lines: list[Said], height: int) -> list[Said]:
 
 
 def _labelled(label: str, lines: Sequence[str], at: int = 0) -> list[str]:
+    """Lines with a label beside the one at `at`; a label that is too long for the gutter has a line of its own."""
+    if len(label) > GUTTER - 2:
+        return [f" {label}", *(" " * GUTTER + line for line in lines)]
     return [f" {label if index == at else '':<{GUTTER - 1}}{line}" for index, line in enumerate(lines)]
