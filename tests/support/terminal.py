@@ -26,6 +26,7 @@ KEYS: Mapping[str, str] = {
     "space": " ",
     "enter": "\r",
     "tab": "\t",
+    "shift+tab": "\x1b[Z",
     "backspace": "\x7f",
     "escape": "\x1b",
     "up": "\x1b[A",
