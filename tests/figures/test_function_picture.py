@@ -148,6 +148,10 @@ def test_poles_of_the_tangent() -> None:
 def test_a_jump_over_zero_breaks_the_curve_and_missing_values_do_not() -> None:
     assert broken_at_poles([0, 1, 2, 3, 4, 5, 6, 7], [-0.1, -0.1, -0.1, -0.1, -0.1, 2.0, 2.0, -0.1])[1] == [4.5, 6.5]
     assert broken_at_poles([0, 1, 2], [-1.0, None, 1.0])[1] == []
+    # A steep root towards which |f| falls from one side, and noise about zero, are no poles.
+    assert broken_at_poles(list(range(13)), [-0.1] * 9 + [-9.0, -5.0, 9.0, 5.0])[1] == []
+    assert broken_at_poles(list(range(13)), [5.0, 9.0, -5.0, -9.0] + [-0.1] * 9)[1] == []
+    assert broken_at_poles(list(range(40)), [(-1.0) ** n for n in range(40)])[1] == []
     assert broken_at_poles([], [])[1] == []
 
 

@@ -121,7 +121,7 @@ def test_marks_of_two_kinds_in_a_cell_can_be_told() -> None:
 
 
 def test_a_mark_beside_the_picture_is_an_arrow() -> None:
-    marks = (Mark(-1, 0.5, "current"), Mark(9, 0.5, "current"), Mark(0.5, 7, "current"), Mark(0.5, -7, "current"))
+    marks = (Mark(-1, 0.5, "current"), Mark(9, 0.5, "current"), Mark(0.5, 1.5, "current"), Mark(0.5, -7, "current"))
     lines = draw(Picture(marks=marks, x=plain_axis(0, 1), y=plain_axis(0, 1)), 24, 10, ASCII)
     text = "\n".join(lines)
     assert [text.count(arrow) for arrow in "<>^vo"] == [1, 1, 1, 1, 0]
@@ -197,6 +197,13 @@ def test_labels_that_need_a_note_are_not_shown_without_it() -> None:
     full = Picture(curves=tuple(Curve([0, 1], [y * 1e45] * 2) for y in (1 + n / 20 for n in range(21))))
     packed = draw(full, 30, 8, ASCII)
     assert not any("e+45" in line or "1.5" in line for line in packed)
+
+
+def test_labels_below_that_need_a_note_are_not_shown_without_it() -> None:
+    picture = Picture(curves=(Curve([1.78316, 1.783169], [0, 1]),), x=Axis("y", "m"))
+    assert draw(picture, 24, 8, ASCII)[-1].strip() == "y [m]: 1.78316 + e-6"
+    assert draw(picture, 16, 8, ASCII)[-1].strip() == "1.78316 + e-6"
+    assert [line.strip() for line in draw(picture, 12, 8, ASCII)[-2:]] == ["", ""]
 
 
 def test_only_the_raster_touches_plotext_and_nothing_does_on_import() -> None:

@@ -26,6 +26,11 @@ def test_fractions_are_those_of_exact_arithmetic(low: float, high: float, value:
     assert abs(Fraction(Scale(low, high).fraction(value)) - expected) <= slack * (1 + abs(expected))
 
 
+def test_fractions_of_a_range_that_is_wider_than_any_float() -> None:
+    scale = Scale(-1.7e308, 1.7e308)
+    assert [scale.fraction(value) for value in (-1.7e308, 0.0, 0.85e308, 1.7e308)] == pytest.approx([0.0, 0.5, 0.75, 1.0])
+
+
 @pytest.mark.parametrize("value", [None, math.nan, math.inf, -math.inf, 10**400])
 def test_what_has_no_place_has_no_fraction(value: float | None) -> None:
     assert math.isnan(Scale(0.0, 1.0).fraction(value))

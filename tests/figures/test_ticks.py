@@ -119,6 +119,17 @@ def test_close_rows_rather_than_a_single_label() -> None:
     assert frame.y_labels[0][0] == row_of(frame.y_ticks.ticks[0].fraction, frame.rows)
 
 
+def test_labels_leave_the_title_alone() -> None:
+    frame = framed(Scale(20.0, 100.0), Scale(0.0, 3.0), 40, 8, Picture(x=Axis("f")))
+    assert (frame.gutter, frame.left) == (2, 2)
+    assert min(start for start, _ in frame.x_labels) >= 2  # `20` would stick out to the left
+
+
+def test_a_narrow_picture_has_no_labels_at_its_side() -> None:
+    frame = framed(Scale(0.0, 1.0), Scale(0.0, 0.001), 14, 8)
+    assert (frame.gutter, frame.columns, frame.y_labels) == (0, 14, [])
+
+
 def test_room_is_made_for_a_label_that_sticks_out() -> None:
     x = Scale(0.005, 0.1)
     frame = framed(x, Scale(-2.0, 8.0), 28, 8, Picture(x=Axis("f")))

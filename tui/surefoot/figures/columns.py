@@ -2,7 +2,7 @@
 
 The decimals are chosen from the numbers shown, so that neighbouring iterates stand digit under digit and one sees a
 solve take hold. A number that the shared decimals would cut to almost nothing, or that is too long for them, is written
-with an exponent in the same cells.
+with an exponent in the same cells. Words in place of a number are expected as `Characters.text` gives them.
 """
 
 from __future__ import annotations
@@ -10,10 +10,9 @@ from __future__ import annotations
 import re
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
-from decimal import Decimal
 from typing import Final
 
-from surefoot.figures.numbers import Number, Value, fixed, read, scientific
+from surefoot.figures.numbers import Exact, Number, fixed, read, scientific, zero
 
 _ENOUGH_DIGITS: Final = 6
 """Significant digits below which a number is rather written with an exponent."""
@@ -43,27 +42,26 @@ class ColumnLayout:
     def text(self, number: Number) -> str:
         """A number, or the word that stands in its place, in `width - 1` cells."""
         cells = max(0, self.width - 1)
-        value = read(number)
-        if value.exact is None:
-            return _within(value.word, cells)
-        if value.exact.is_zero():
-            zero = "-0" if value.exact.is_signed() else "0"
-            return _within(zero.rjust(min(self.lead, cells)), cells)
-        text = self._fixed(value, cells)
-        return _with_exponent(value, self.lead, cells) if text is None else text
+        exact = read(number)
+        if isinstance(exact, str):
+            return _within(exact, cells)
+        if exact.value.is_zero():
+            return _within(zero(exact.value).rjust(min(self.lead, cells)), cells)
+        text = self._fixed(exact, cells)
+        return _with_exponent(exact, self.lead, cells) if text is None else text
 
     def marked(self, number: Number, previous: Number) -> str:
         """A number in `width` cells with the mark behind the digits that it shares with the previous iterate."""
         return with_steady_mark(self.text(number), self.text(previous))[: max(0, self.width)]
 
-    def _fixed(self, value: Value, cells: int) -> str | None:
+    def _fixed(self, exact: Exact, cells: int) -> str | None:
         """The number with the shared decimals, point under point; None where that says too little or does not fit."""
-        exact = value.exact
-        if self.decimals is None or exact is None or not _fits(value, self.decimals, self.lead):
+        if self.decimals is None or not _fits(exact, self.decimals, self.lead):
             return None
-        whole, _, decimals = fixed(exact, min(self.decimals, value.digits - 1 - exact.adjusted())).partition(".")
-        text = f"{whole.rjust(self.lead)}.{decimals}"
-        return text.ljust(cells) if len(whole) <= self.lead and len(text) <= cells else None
+        decimals = min(self.decimals, exact.digits - 1 - exact.value.adjusted())
+        whole, _, rest = fixed(exact.value, decimals).partition(".")
+        text = f"{whole.rjust(self.lead)}.{rest}"
+        return text.ljust(cells) if len(text) <= cells else None
 
 
 def column_layout(numbers: Iterable[Number], width: int) -> ColumnLayout:
@@ -73,14 +71,16 @@ def column_layout(numbers: Iterable[Number], width: int) -> ColumnLayout:
         numbers: the numbers that the column shows, in order; words among them do not count.
         width: cells of the column.
     """
-    values = [value for value in map(read, numbers) if value.exact is not None and not value.exact.is_zero()]
-    signs = int(any(value.exact is not None and value.exact.is_signed() for value in values))
+    shown = [exact for exact in map(read, numbers) if isinstance(exact, Exact) and not exact.value.is_zero()]
+    signs = int(any(exact.value.is_signed() for exact in shown))
+    # With these decimals the smallest number shows all its digits.
+    most = max((exact.digits - 1 - exact.value.adjusted() for exact in shown), default=0)
     cells = max(0, width - 1)
     best: tuple[bool, int, int] = (False, 0, 0)
     chosen = ColumnLayout(width, signs + 1, None)
-    for decimals in range(1, min(cells, _most_decimals(values)) + 1):
-        good = [value for value in values if _fits(value, decimals, cells - 1 - decimals)]
-        score = (bool(good) and good[-1] is values[-1], len(good), decimals)
+    for decimals in range(1, min(cells, most) + 1):
+        good = [exact for exact in shown if _fits(exact, decimals, cells - 1 - decimals)]
+        score = (bool(good) and good[-1] is shown[-1], len(good), decimals)
         if good and score > best:
             best, chosen = score, ColumnLayout(width, max(map(_lead, good)), decimals)
     return chosen
@@ -128,33 +128,26 @@ def _shared(text: str, other: str) -> int:
     return min(len(text), len(other))
 
 
-def _fits(value: Value, decimals: int, lead: int) -> bool:
+def _fits(exact: Exact, decimals: int, lead: int) -> bool:
     """Whether a number written with these decimals shows enough of its digits, in the cells before the point."""
-    if value.exact is None or value.exact.adjusted() < _SMALLEST_PLAIN:
-        return False
-    shown = decimals + value.exact.adjusted() + 1
-    return shown >= min(_ENOUGH_DIGITS, value.digits) and _lead(value) <= lead
+    exponent = exact.value.adjusted()
+    shown = decimals + exponent + 1
+    return exponent >= _SMALLEST_PLAIN and shown >= min(_ENOUGH_DIGITS, exact.digits) and _lead(exact) <= lead
 
 
-def _lead(value: Value) -> int:
-    exact = value.exact or Decimal(0)
-    return int(exact.is_signed()) + max(exact.adjusted(), 0) + 1
+def _lead(exact: Exact) -> int:
+    """Cells that a number takes before its point."""
+    return int(exact.value.is_signed()) + max(exact.value.adjusted(), 0) + 1
 
 
-def _most_decimals(values: Sequence[Value]) -> int:
-    """The decimals with which the smallest number shows all its digits."""
-    return max((value.digits - 1 - value.exact.adjusted() for value in values if value.exact is not None), default=0)
-
-
-def _with_exponent(value: Value, lead: int, cells: int) -> str:
-    """The number with its own exponent, its point under the others' where there is room."""
-    exact = value.exact or Decimal(0)
-    sign = int(exact.is_signed())
-    for before in (max(0, lead - 1 - sign), 0):
-        for digits in range(value.digits, 0, -1):
-            mantissa, exponent = scientific(exact, digits)
+def _with_exponent(exact: Exact, lead: int, cells: int) -> str:
+    """The number with its own exponent, its point under the others' where there is room for some digits."""
+    sign = int(exact.value.is_signed())
+    for before, fewest in ((max(0, lead - 1 - sign), min(4, exact.digits)), (0, 1)):
+        for digits in range(min(exact.digits, cells), fewest - 1, -1):
+            mantissa, exponent = scientific(exact.value, digits)
             text = f"{' ' * before}{mantissa}e{exponent:+03d}"
-            if len(text) <= cells and (digits >= min(4, value.digits) or before == 0):
+            if len(text) <= cells:
                 return text.ljust(cells)
     return "~" * cells  # not even one digit and the exponent fit: nothing rather than a wrong number
 

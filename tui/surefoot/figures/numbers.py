@@ -29,36 +29,27 @@ _RECORD_TEXT: Final = re.compile(
 
 
 @dataclass(frozen=True, slots=True)
-class Value:
-    """A number taken apart for writing.
+class Exact:
+    """A finite number: its exact value, and the significant digits that its arithmetic carries."""
 
-    Attributes:
-        exact: its exact value; None where there is no finite number.
-        digits: significant digits that its arithmetic carries.
-        word: what stands in its place when `exact` is None.
-    """
-
-    exact: Decimal | None
+    value: Decimal
     digits: int = BINARY64_DIGITS
-    word: str = ""
 
 
-def read(number: Number) -> Value:
-    """Takes a number apart; never raises. None gives the empty word."""
+def read(number: Number) -> Exact | str:
+    """A number for writing, or the word that stands in its place; None gives the empty word. Never raises."""
     if number is None:
-        return Value(None)
+        return ""
     if isinstance(number, str):
         return _read_text(number)
     digits = BINARY32_DIGITS if type(number).__name__ == "float32" else BINARY64_DIGITS
     if isinstance(number, int):
-        return Value(Decimal(number), digits)
+        return Exact(Decimal(number), digits)
     try:
         nearest = float(number)
     except (TypeError, ValueError, OverflowError):
-        return Value(None, word=str(number))
-    if math.isfinite(nearest):
-        return Value(Decimal(nearest), digits)
-    return Value(None, digits, str(nearest))
+        return str(number)
+    return Exact(Decimal(nearest), digits) if math.isfinite(nearest) else str(nearest)
 
 
 def significant(number: Number, digits: int | None = None) -> str:
@@ -68,13 +59,13 @@ def significant(number: Number, digits: int | None = None) -> str:
         number: the number; words are given back as they are.
         digits: significant digits, at least 1; None for all that its arithmetic carries (17 in binary64).
     """
-    value = read(number)
-    if value.exact is None:
-        return value.word
-    if value.exact.is_zero():
-        return _zero(value.exact)
-    wanted = max(1, value.digits if digits is None else digits)
-    mantissa, exponent = scientific(value.exact, wanted)
+    exact = read(number)
+    if isinstance(exact, str):
+        return exact
+    if exact.value.is_zero():
+        return zero(exact.value)
+    wanted = max(1, exact.digits if digits is None else digits)
+    mantissa, exponent = scientific(exact.value, wanted)
     if -5 < exponent < wanted:
         # The rounded value is written, so that 9.996 to three digits is 10.0 and not 10.00.
         return fixed(Decimal(f"{mantissa}e{exponent}"), wanted - 1 - exponent)
@@ -88,12 +79,12 @@ def all_digits(number: Number) -> str:
 
 def short(number: Number, digits: int = 3) -> str:
     """The short form of a residual or a step, always with its sign: `+2.11e-05`; exactly zero is `0`."""
-    value = read(number)
-    if value.exact is None:
-        return value.word
-    if value.exact.is_zero():
-        return _zero(value.exact)
-    mantissa, exponent = scientific(value.exact, max(1, digits))
+    exact = read(number)
+    if isinstance(exact, str):
+        return exact
+    if exact.value.is_zero():
+        return zero(exact.value)
+    mantissa, exponent = scientific(exact.value, max(1, digits))
     sign = "" if mantissa.startswith("-") else "+"
     return f"{sign}{mantissa}e{exponent:+03d}"
 
@@ -115,31 +106,36 @@ def with_unit(number: str, unit: str) -> str:
     return number if unit in ("", "1") or not number else f"{number} {unit}"
 
 
-def scientific(exact: Decimal, digits: int) -> tuple[str, int]:
+def scientific(value: Decimal, digits: int) -> tuple[str, int]:
     """The mantissa with its sign to so many digits, and the exponent of ten, of a value that is not zero."""
-    mantissa, exponent = f"{exact:.{digits - 1}e}".split("e")
+    mantissa, exponent = f"{value:.{digits - 1}e}".split("e")
     return mantissa, int(exponent)
 
 
-def fixed(exact: Decimal, decimals: int) -> str:
+def fixed(value: Decimal, decimals: int) -> str:
     """A value with so many decimals and no exponent."""
-    return f"{exact:.{max(0, decimals)}f}"
+    return f"{value:.{max(0, decimals)}f}"
 
 
-def _read_text(text: str) -> Value:
+def zero(value: Decimal) -> str:
+    """Exactly zero: told from a number that only rounds to it, its sign kept."""
+    return "-0" if value.is_signed() else "0"
+
+
+def _read_text(text: str) -> Exact | str:
     record = _RECORD_TEXT.fullmatch(text)
     if record is None:
-        return Value(None, word=text)
+        return text
     precision, number = record["precision"] or "", record["number"]
     if number.lstrip("+-") in ("inf", "nan"):
-        return Value(None, word=number)
+        return number
     if precision.startswith("mp"):
         try:
-            return Value(Decimal(number), max(1, int(precision[2:])))
+            return Exact(Decimal(number), max(1, int(precision[2:])))
         except InvalidOperation:  # an exponent beyond what any decimal can have
-            return Value(None, word=number)
+            return number
     if precision == "f32":
-        return Value(Decimal(_binary32(float(number))), BINARY32_DIGITS)
+        return Exact(Decimal(_binary32(float(number))), BINARY32_DIGITS)
     return read(float(number))
 
 
@@ -149,7 +145,3 @@ def _binary32(number: float) -> float:
         return float(struct.unpack("<f", struct.pack("<f", number))[0])
     except OverflowError:
         return number
-
-
-def _zero(exact: Decimal) -> str:
-    return "-0" if exact.is_signed() else "0"

@@ -23,7 +23,7 @@ def as_table(picture: Picture, width: int, height: int, characters: Characters) 
     width, height = max(width, 0), max(height, 0)
     titles = " ".join(filter(None, (picture.x.title, picture.y.title)))
     head = [f"  {titles}"] if titles else []
-    rows = [_row(characters.mark(mark.kind), mark.x, mark.y, width) for mark in picture.marks[: -height - 1 : -1]]
+    rows = [_row(characters.mark(mark.kind), mark.x, mark.y, width) for mark in picture.marks[::-1][:height]]
     left = height - len(head) - len(rows)
     for curve in picture.curves:
         points = [(x, y) for x, y in zip(curve.xs, curve.ys, strict=False) if math.isfinite(place(y))]

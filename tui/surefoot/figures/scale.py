@@ -6,6 +6,7 @@ All further drawing happens in the unit square, so no hostile number goes past t
 from __future__ import annotations
 
 import math
+import sys
 from dataclasses import dataclass
 from typing import Final
 
@@ -113,6 +114,6 @@ def _widened(low: float, high: float) -> tuple[float, float]:
     if low < high:
         return low, high
     room = abs(low) / 10 if low else 1.0
-    largest = 1.7976931348623157e308
+    largest = sys.float_info.max
     low, high = max(low - room, -largest), min(high + room, largest)
     return (low, high) if low < high else (math.nextafter(low, -math.inf), math.nextafter(high, math.inf))

@@ -83,7 +83,7 @@ def _clipped(run: Sequence[Point]) -> Iterator[Stroke]:
         piece = _visible(a, b)
         if piece is None:
             continue
-        if stroke and piece[0] == stroke[-1] and piece[0] == a:
+        if stroke and piece[0] == stroke[-1]:
             stroke.append(piece[1])
             continue
         if stroke:

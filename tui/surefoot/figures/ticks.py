@@ -92,7 +92,6 @@ def _multiples(scale: Scale, low: Fraction, high: Fraction, factor: int, power: 
         fractions = [scale.fraction(float(count * Fraction(10) ** power)) for count in counts]
     else:
         fractions = [float((count * Fraction(10) ** power - low) / (high - low)) for count in counts]
-    fractions = [min(max(fraction, 0.0), 1.0) for fraction in fractions]
     return Ticks(tuple(Tick(fraction, text) for fraction, text in zip(fractions, texts, strict=True)), note)
 
 
