@@ -28,7 +28,9 @@ def test_fractions_are_those_of_exact_arithmetic(low: float, high: float, value:
 
 def test_fractions_of_a_range_that_is_wider_than_any_float() -> None:
     scale = Scale(-1.7e308, 1.7e308)
-    assert [scale.fraction(value) for value in (-1.7e308, 0.0, 0.85e308, 1.7e308)] == pytest.approx([0.0, 0.5, 0.75, 1.0])
+    assert [scale.fraction(value) for value in (-1.7e308, 0.0, 0.85e308, 1.7e308)] == pytest.approx(
+        [0.0, 0.5, 0.75, 1.0]
+    )
 
 
 @pytest.mark.parametrize("value", [None, math.nan, math.inf, -math.inf, 10**400])
