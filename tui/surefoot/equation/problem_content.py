@@ -55,7 +55,7 @@ def _read_text(content: object, place: str) -> str:
 def _read_order(content: object, place: str) -> int:
     if content not in ("1", "2", "3"):
         raise RecordError(f'{place} must be "1", "2" or "3"')
-    return int(cast(str, content))
+    return int(content)
 
 
 def _list_of(item: _Codec, count: int | None = None) -> _Codec:

@@ -6,9 +6,9 @@ number, which is then the true value rounded once. Definitions follow ISO C (`er
 (`cyl_bessel_j` and its kin, `expint` = Ei); where the standard stops at x >= 0 and the function is still real
 (integer order), the real value is given.
 
-The work is bounded: an order beyond `MAX_ORDER`, and what is not decided at `MAX_BITS`, is `not_a_number`. The
-latter happens only for Bessel functions of an order of some thousands with an argument of like size, whose series
-cancel beyond the bound.
+The work is bounded: a Bessel function of an order beyond `MAX_ORDER` (in proportion less where more than `FIRST_BITS`
+are asked for), and what is not decided at the most bits, is `not_a_number`. In binary64 the latter happens only for
+orders of some thousands with an argument of like size, whose series cancel beyond the bound.
 """
 
 from __future__ import annotations
@@ -25,6 +25,7 @@ from surefoot.equation.results import FailureKind
 FIRST_BITS = 96
 MAX_BITS = 6144
 MAX_ORDER = 10_000
+_NEARLY_WHOLE = 64
 
 Ball: TypeAlias = Any  # flint.arb
 Exact: TypeAlias = tuple[int, int]  # mantissa, exponent: the number mantissa * 2**exponent
@@ -90,7 +91,9 @@ def settle(
 
     definition = DEFINITIONS[name]
     balls = [arb(argument) for argument in arguments]
-    bits = first_bits
+    if len(balls) == 2 and not abs(balls[0]) * first_bits <= MAX_ORDER * FIRST_BITS:
+        raise OperationFailed(FailureKind.NOT_A_NUMBER)
+    bits = _bits_for_k(balls[0], balls[1], first_bits) if name == "cyl_bessel_k" else first_bits
     while bits <= max_bits:
         with arb_precision(bits):
             ball = definition(*balls)
@@ -123,6 +126,25 @@ def _exact(end: Ball) -> Exact:
     return int(mantissa), int(exponent)
 
 
+def _bits_for_k(nu: Ball, x: Ball, bits: int) -> int:
+    """Bits with which K needs no numerical integration, its slow way out when more than half of the bits cancel.
+
+    Cancelled are exp(2x), where the asymptotic series does not reach, and the nearness of the order to a whole number.
+    """
+    if not 0 < x < bits:
+        return bits
+    return max(bits, 2 * (3 * math.ceil(float(x)) + min(_nearness(nu), _NEARLY_WHOLE)) + 64)
+
+
+def _nearness(order: Ball) -> int:
+    """The n by which an order lies about 2**-n beside a whole number; 0 for a whole number itself."""
+    mantissa, exponent = _exact(order)
+    if exponent >= 0:
+        return 0
+    fraction = mantissa % (1 << -exponent)
+    return -exponent - min(fraction, (1 << -exponent) - fraction).bit_length()
+
+
 def _whole(x: Ball) -> bool:
     return bool(x.is_integer())
 
@@ -153,33 +175,30 @@ def _normal_cdf(x: Ball) -> Ball:
     return (-x / type(x)(2).sqrt()).erfc() / 2
 
 
-def _require_order(nu: Ball) -> None:
-    if not abs(nu) <= MAX_ORDER:
-        raise OperationFailed(FailureKind.NOT_A_NUMBER)
-
-
 def _cyl_bessel_j(nu: Ball, x: Ball) -> Ball:
     _require(_whole(nu) or x > 0 or (x == 0 and nu > 0))
-    _require_order(nu)
     return x.bessel_j(nu)
 
 
 def _cyl_bessel_i(nu: Ball, x: Ball) -> Ball:
     _require(_whole(nu) or x > 0 or (x == 0 and nu > 0))
-    _require_order(nu)
     return x.bessel_i(abs(nu) if _whole(nu) else nu)
 
 
 def _cyl_neumann(nu: Ball, x: Ball) -> Ball:
     _require(x > 0)
-    _require_order(nu)
     return x.bessel_y(nu)
 
 
 def _cyl_bessel_k(nu: Ball, x: Ball) -> Ball:
+    from flint import ctx
+
     _require(x > 0)
-    _require_order(nu)
-    return x.bessel_k(abs(nu))
+    nu = abs(nu)
+    if _nearness(nu) <= _NEARLY_WHOLE or x > ctx.prec:
+        return x.bessel_k(nu)
+    # the definition itself: DLMF 10.27.4
+    return (x.bessel_i(-nu) - x.bessel_i(nu)) * type(x).pi() / (2 * nu.sin_pi())
 
 
 def _expint(x: Ball) -> Ball:
