@@ -132,7 +132,7 @@ def test_the_main_job(home: Home) -> None:
 def test_a_problem_file_with_its_plan_opens_and_goes_to_the_stop(home: Home) -> None:
     write(home.folder, COLEBROOK + DIVERGING_SECANT)
     with open_screens(home, "colebrook.toml", "--by", "M. R., duty") as seen:
-        seen.wait_for("[1 function]", "a accept")
+        seen.wait_for("[1 function]", "colebrook.toml is read; a accepts it")
         seen.press("ctrl+s")
         seen.wait_for("[2 method]", ">secant")
         seen.press("b")

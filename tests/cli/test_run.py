@@ -231,6 +231,7 @@ def test_a_unit_follows_the_root(home: Home, capsys) -> None:
 NEWTON = '[plan]\nmethod = "newton-raphson"\nstart = [0.02]\n'
 BAD = [
     (COLEBROOK, "colebrook.toml: plan: is missing; a run needs a [plan] with method and start"),
+    (COLEBROOK.replace("sqrt(f)))", "sqrt(f)"), "colebrook.toml: equation: "),
     (COLEBROOK + '[plan]\nmethod = "secant"\n', "colebrook.toml: plan.start: missing"),
     (COLEBROOK + "[plan]\nstart = [1, 2]\n", "colebrook.toml: plan.method: missing"),
     (COLEBROOK + '[plan]\nmethod = "secnt"\nstart = [1, 2]\n', "colebrook.toml: plan.method: "),
@@ -243,7 +244,7 @@ BAD = [
         "colebrook.toml: plan.method: newton-raphson needs derivative 1",
     ),
     (COLEBROOK + "[where]\na = 'b'\nb = 'a'\n" + SECANT, "colebrook.toml: "),
-    ("unknown = ", "colebrook.toml: line 1"),
+    ("unknown = ", "colebrook.toml: is not TOML: invalid value at the end of the file"),
     ("", "colebrook.toml: "),
 ]
 

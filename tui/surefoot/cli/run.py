@@ -46,12 +46,10 @@ def run(request: Request) -> int:
 def _read(name: str) -> tuple[Problem, Plan]:
     """The problem and the plan of a file, both checked. Raises SurefootError that names the file."""
     file = read_problem_file(read_text(name), name)
-    if file.program is not None:
-        raise RequestError("this version runs no outside programs; state an equation", place=f"{name}: program")
-    if file.plan is None:
-        raise RequestError("is missing; a run needs a [plan] with method and start", place=f"{name}: plan")
     with _naming(name):
         checked = check_problem(file.problem)
+        if file.plan is None:
+            raise PlanError("is missing; a run needs a [plan] with method and start", key="plan")
         plan = plan_from_table(file.plan, file.arithmetic)
         check_plan(plan, checked)
     return file.problem, plan
