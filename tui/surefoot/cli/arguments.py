@@ -4,7 +4,6 @@ from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
-from difflib import get_close_matches
 from pathlib import Path
 from typing import Literal, TypeAlias
 
@@ -220,6 +219,8 @@ def _check_count(command: Command, operands: Sequence[str]) -> None:
 
 def nearest(word: str, known: Sequence[str]) -> str:
     """The known word that was most likely meant; empty when none is near."""
+    from difflib import get_close_matches
+
     return next(iter(get_close_matches(word[:40], [name for name in known if name], n=1, cutoff=0.5)), "")
 
 

@@ -3,13 +3,9 @@
 from __future__ import annotations
 
 import os
-import platform
 import signal
 import sys
-import tempfile
-import traceback
 from collections.abc import Sequence
-from datetime import UTC, datetime
 from pathlib import Path
 from types import TracebackType
 
@@ -64,6 +60,11 @@ class Guard:
 
 def _report(error: Exception, words: Sequence[str]) -> str:
     """Save what is needed to mend the fault; the line that says where it is."""
+    import platform
+    import tempfile
+    import traceback
+    from datetime import UTC, datetime
+
     now = datetime.now(UTC)
     text = "\n".join(
         (
