@@ -20,16 +20,13 @@ from surefoot.equation.problem_keys import (
     LATER,
     UNIT_IN_VALUE,
     Either,
-    Leaf,
-    Mismatch,
     Names,
     Node,
     Table,
     Tables,
-    TypedNumber,
-    shown,
     tables_with,
 )
+from surefoot.equation.problem_values import Leaf, Mismatch, TypedNumber, shown
 from surefoot.equation.tokens import is_literal
 from surefoot.equation.toml_places import line_of, too_deep
 from surefoot.errors import ProblemError
@@ -166,13 +163,16 @@ class _Reader:
 _SHOWN = 40
 _EXAMPLES = {"unknown": '"y"', "equation": '"left = right"'}
 _TOML_PLACE = re.compile(r"(.*) \(at (?:line (\d+), column (\d+)|end of document)\)", re.DOTALL)
+_TWICE = ("Cannot overwrite a value", "Cannot declare", "Cannot mutate")
 
 
 def _toml_message(message: str) -> tuple[str, str]:
     """The parser's message in our words, and the line as a place where it tells one."""
     match = _TOML_PLACE.fullmatch(message)
-    what = (match[1] if match else message)[:120]
-    what = what[:1].lower() + what[1:]
+    what = match[1] if match else message
+    if what.startswith(_TWICE):
+        what = "a key or table is stated twice"
+    what = what[:1].lower() + what[1:120]
     if match is None or match[2] is None:
         return f"{what} at the end of the file", ""
     return f"{what} in column {match[3]}", f"line {match[2]}"
@@ -194,6 +194,7 @@ def _table_words(path: Path) -> str:
 
 
 def _shortened(part: str) -> str:
+    part = part if part.isprintable() else ascii(part)
     return part if len(part) <= _SHOWN else part[: _SHOWN - 3] + "..."
 
 

@@ -8,7 +8,8 @@ from dataclasses import fields
 from typing import Any
 
 from surefoot.equation.problem import Problem
-from surefoot.equation.problem_keys import FILE, FORMAT, TEXT, Either, Leaf, Names, Node, Table, Tables, escaped, quoted
+from surefoot.equation.problem_keys import FILE, FORMAT, Either, Names, Node, Table, Tables
+from surefoot.equation.problem_values import TEXT, Leaf, escaped, quoted
 
 _BARE_KEY = re.compile(r"[A-Za-z0-9_-]+")
 
