@@ -146,6 +146,13 @@ def test_a_value_just_beside_a_midpoint_falls_on_its_own_side() -> None:
     assert evaluate("cyl_bessel_i", 1.0, 3 * smallest) == 2 * smallest
 
 
+@pytest.mark.parametrize("nu", [1e-25, -1e-300, 5e-324])
+def test_an_order_close_to_a_whole_number_is_no_loss(nu: float) -> None:
+    """K_nu = K_0 + nu**2 ..., so that the values of order 0 are the nearest."""
+    for x in (1e-3, 1.0, 30.0, 200.0):
+        check("cyl_bessel_k", lambda _nu, x: more_digits(mpmath.besselk, 60)(0, x), nu, x)
+
+
 def test_exact_values_are_exact() -> None:
     assert evaluate("tgamma", 24.0) == float(math.factorial(23))
     assert [evaluate("lgamma", x) for x in (1.0, 2.0)] == [0.0, 0.0]
