@@ -30,16 +30,16 @@ def test_both_series_are_told_apart_by_their_letters() -> None:
         (1, 1.0, "d"),
         (2, 1e-2, "d"),
         (3, 1e-4, "d"),
-        (0, 1e2, "f"),
-        (1, 1.0, "f"),
-        (2, 1e-4, "f"),
-        (3, 1e-8, "f"),
+        (0, 1e2, "r"),
+        (1, 1.0, "r"),
+        (2, 1e-4, "r"),
+        (3, 1e-8, "r"),
     ]
-    assert (picture.y.title, picture.y.low, picture.y.high) == ("d |dy|  f |f|", 1e-8, 1e2)
+    assert (picture.y.title, picture.y.low, picture.y.high) == ("d |dy|  r |residual|", 1e-8, 1e2)
     text = "\n".join(draw(picture, 60, 16, ASCII))
-    assert text.count("d |dy|  f |f|") == 1
-    text = text.replace("d |dy|  f |f|", "")
-    assert (text.count("d"), text.count("f"), text.count("*")) == (2, 3, 1)
+    assert text.count("d |dy|  r |residual|") == 1
+    text = text.replace("d |dy|  r |residual|", "")
+    assert (text.count("d"), text.count("r"), text.count("*")) == (2, 3, 1)
 
 
 def test_an_exact_zero_stands_at_the_bottom_and_its_line_runs_down_to_it() -> None:

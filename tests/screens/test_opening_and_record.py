@@ -90,7 +90,8 @@ async def test_leaving_says_outcome_root_unit_and_file(tmp_path: Path) -> None:
     path = tailrace_session(tmp_path)
     with Session.open(path, by="M. R., duty") as session:
         assert (
-            leaving_line(session) == f"surefoot: stepping at y = 0.20000000000000001 m, f = -11.764279953227335; {path}"
+            leaving_line(session)
+            == f"surefoot: stepping at y = 0.20000000000000001 m, residual -11.764279953227335; {path}"
         )
         session.do(TakeSteps(None))
         assert leaving_line(session) == f"surefoot: converged, y = 1.7831627143022979 m; {path}"

@@ -5,8 +5,8 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
-from support.screens import TAILRACE, program, screen_text, tailrace_session, wait_until
 
+from support.screens import TAILRACE, program, screen_text, tailrace_session, wait_until
 from surefoot.methods.plan import Plan, Stop
 from surefoot.screens.app import SurefootApp
 
@@ -141,7 +141,7 @@ async def test_the_log_follows_a_long_run_and_can_be_looked_through(tmp_path: Pa
         await pilot.press("home")
         await pilot.pause()
         text = screen_text(app)
-        assert "Start 0: y = 0.200000000 m, f = -1.18e+01." in text
+        assert "Start 0: y = 0.200000000 m, residual -1.18e+01." in text
         assert TAILRACE.title in text
 
 

@@ -11,7 +11,7 @@ from surefoot.figures.picture import Axis, Curve, Mark, Picture, place
 ConvergenceStep: TypeAlias = tuple[int, float | None, float | None]
 
 _STEP: Final = "d"
-_RESIDUAL: Final = "f"
+_RESIDUAL: Final = "r"
 _BOTH: Final = "*"
 _ROOM: Final = 0.15  # of the height, below the least value
 
@@ -43,7 +43,7 @@ def convergence_picture(steps: Sequence[ConvergenceStep], *, name: str = "x") ->
         curves=tuple(curves),
         marks=tuple(marks),
         x=Axis("k", whole=True),
-        y=Axis(f"{_STEP} |d{name}|  {_RESIDUAL} |f|", low=bottom, high=top, log=True),
+        y=Axis(f"{_STEP} |d{name}|  {_RESIDUAL} |residual|", low=bottom, high=top, log=True),
         together=_BOTH,
         empty="no step and no value of f yet",
     )

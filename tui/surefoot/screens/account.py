@@ -33,7 +33,7 @@ def account_words(run: Run, iterate: Iterate, previous: Iterate | None, order: f
     for limited in iterate.limited:
         text += " " + words.limit(limited)
     if isinstance(iterate.f, Failure):
-        return f"{text} f has no value there: {iterate.f}."
+        return f"{text} No residual there: {iterate.f}."
     return text if order is None else f"{text} Order {order:.1f}."
 
 
@@ -56,8 +56,8 @@ class _Words:
 
     def residual(self, iterate: Iterate) -> str:
         if isinstance(iterate.f, Failure):
-            return f"f has no value: {iterate.f}"
-        return f"f = {short(self._arithmetic.encode(iterate.f))}"
+            return f"no residual: {iterate.f}"
+        return f"residual {short(self._arithmetic.encode(iterate.f))}"
 
     def basis(self, account: Account) -> str:
         at = [self.number(point.x, 8) for point in account.points]
@@ -66,7 +66,7 @@ class _Words:
             slope = self.number(account.slope, 4) if account.slope is not None else "?"
             age = f", held for {figures['age']} steps" if figures.get("age", "0") not in ("0", "") else ""
             step = f", difference step {figures['h']}" if "h" in figures else ""
-            return f"tangent at {self.name} = {at[0]}, df/d{self.name} = {slope}{age}{step}"
+            return f"tangent at {self.name} = {at[0]}, slope {slope}{age}{step}"
         if account.shape == "chord":
             slope = self.number(account.slope, 4) if account.slope is not None else "?"
             step = f", difference step {figures['h']}" if "h" in figures else ""

@@ -19,5 +19,7 @@ def leaving_line(session: Session | None) -> str:
     value = f"{problem.unknown} = {with_unit(all_digits(record_text(run, iterate.x)), problem.unit)}"
     if run.ending is not None and run.ending.outcome == "converged":
         return f"surefoot: converged, {value}; {session.path}"
-    residual = "no value of f" if isinstance(iterate.f, Failure) else f"f = {all_digits(record_text(run, iterate.f))}"
+    residual = (
+        "no residual" if isinstance(iterate.f, Failure) else f"residual {all_digits(record_text(run, iterate.f))}"
+    )
     return f"surefoot: {ending_words(run)} at {value}, {residual}; {session.path}"

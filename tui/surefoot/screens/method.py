@@ -170,7 +170,7 @@ class MethodRoom(Room):
         f = self.surefoot.sampler(self.state.stated).at(self.picking.x)
         value = "no value there" if f is None else significant(f, 4)
         return self.styled(
-            f" start {self.picking.number}: {problem.unknown} = {self.picking.text}, f = {value}"
+            f" start {self.picking.number}: {problem.unknown} = {self.picking.text}, residual {value}"
             "   left, right move   enter takes it   esc leaves",
             "value",
         )

@@ -28,6 +28,7 @@ from surefoot.session.state import Run, StatedProblem
 
 _Near: TypeAlias = Callable[[Real], float]
 
+_RESIDUAL = Axis("residual")
 _SAMPLES_A_CELL = 2
 _KEPT = 16  # windows whose samples are kept: the ones one comes back to
 _SHOWN_ITERATES = 200
@@ -84,7 +85,7 @@ def start_picture(
     if window is None:
         return ["", " Give the working range (1 function) or a start", " to see f here."][:height]
     points = [(start, None) for start in starts]
-    picture = function_picture(_samples(sampler, window, width), iterates=points, x=_x_axis(sampler), f=Axis("f"))
+    picture = function_picture(_samples(sampler, window, width), iterates=points, x=_x_axis(sampler), f=_RESIDUAL)
     if cursor is not None:
         f = sampler.at(cursor)
         picture = replace(
@@ -107,7 +108,7 @@ def step_lines(
     iterate = window.current
     shape = _shape(near, iterate, iterate.account) if iterate.account is not None else None
     picture = function_picture(
-        _samples(sampler, span, width), iterates=points, step=shape, x=_x_axis(sampler), f=Axis("f")
+        _samples(sampler, span, width), iterates=points, step=shape, x=_x_axis(sampler), f=_RESIDUAL
     )
     return draw(picture, width, height, characters)
 

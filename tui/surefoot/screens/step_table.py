@@ -58,7 +58,7 @@ def table_lines(run: Run, window: Window, width: int, rows: int) -> list[tuple[s
     first = max(len(window.iterates) - rows, 0)
     numbers = [arithmetic.encode(iterate.x) for iterate in window.iterates]
     x_texts = iterate_column(numbers[first:], size, numbers[first - 1] if first else None)
-    heading = f"{'k':>4}  {(problem.unknown + unit)[:size]:<{size}} {'f':<9} {'d' + problem.unknown:<9} order"
+    heading = f"{'k':>4}  {(problem.unknown + unit)[:size]:<{size}} {'residual':<9} {'d' + problem.unknown:<9} order"
     if wide:
         heading += f" {'ratio':>8} {'d' + problem.unknown + '/' + problem.unknown:>10}"
     lines = [(heading[:width], False)]
@@ -81,8 +81,8 @@ def _flag(iterate: Iterate) -> str:
 
 
 def landing_lines(rows: Sequence[tuple[str, str, str, str]], width: int) -> list[str]:
-    """The table of trial steps from (method, x, |f|, why it cannot step or f has no value)."""
-    lines = ["", f"   {'method':<26}{'would land at':<20}|f| there", ""]
+    """The table of trial steps from (method, x, |residual|, why it cannot step or there is no residual)."""
+    lines = ["", f"   {'method':<26}{'would land at':<20}|residual| there", ""]
     for method, x, residual, words in rows:
         if words and not residual:
             lines.append(f"   {method:<26}{x + '  ' if x else ''}{words}")

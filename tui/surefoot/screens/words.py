@@ -12,7 +12,7 @@ from surefoot.session.state import Run, SessionState
 OUTCOME_WORDS: dict[Outcome, str] = {
     "converged": "converged",
     "step_limit": "step limit",
-    "failed_evaluation": "f failed",
+    "failed_evaluation": "no value of f",
     "broke_down": "broke down",
     "left_range": "left the range",
     "no_progress": "no progress",
