@@ -107,9 +107,9 @@ def step_under_test(arithmetic: Arithmetic, stride: Stride, raw: bool) -> Real |
 def inequality(arithmetic: Arithmetic, side: Side) -> str:
     """`|dx| = 1.5e-11 <= 1e-10`, or with > where it does not hold; a comparison of one's own with its two sides."""
     name, left, right = (side[0], *(told(arithmetic, number) for number in side[1:]))
-    if name not in _LEFT:
+    if name not in LEFT_SIDES:
         return f"{name} ({left} and {right})"
-    return f"{_LEFT[name]} = {left} {'<=' if side[1] <= side[2] else '>'} {right}"
+    return f"{LEFT_SIDES[name]} = {left} {'<=' if side[1] <= side[2] else '>'} {right}"
 
 
 def _absolute(arithmetic: Arithmetic, tolerances: Tolerances, stride: Stride) -> tuple[Real, Real] | None:
@@ -152,4 +152,4 @@ _SIDES: Mapping[str, Callable[[Arithmetic, Tolerances, Stride], tuple[Real, Real
     {"x_absolute": _absolute, "x_relative": _relative, "sum": _sum, "residual": _residual}
 )
 
-_LEFT = MappingProxyType({"x_absolute": "|dx|", "x_relative": "|dx|", "sum": "|dx|", "residual": "|residual|"})
+LEFT_SIDES = MappingProxyType({"x_absolute": "|dx|", "x_relative": "|dx|", "sum": "|dx|", "residual": "|residual|"})

@@ -6,6 +6,8 @@ from surefoot.equation.choice import arithmetic_of
 from surefoot.equation.results import Failure
 from surefoot.figures.numbers import short, significant, with_unit
 from surefoot.methods.contract import Account, Iterate, Limited
+from surefoot.methods.stopping import LEFT_SIDES
+from surefoot.screens.words import OUTCOME_WORDS
 from surefoot.session.state import Run
 
 _STAGES = {
@@ -35,6 +37,24 @@ def account_words(run: Run, iterate: Iterate, previous: Iterate | None, order: f
     if isinstance(iterate.f, Failure):
         return f"{text} No residual there: {iterate.f}."
     return text if order is None else f"{text} Order {order:.1f}."
+
+
+def ending_sentence(run: Run) -> str:
+    """How the run ended, with both sides of the tests that took part in short figures."""
+    if run.ending is None:
+        return ""
+    if run.ending.verdict is None:
+        return run.ending.says
+    words, verdict = _Words(run), run.ending.verdict
+    steps = f"{run.steps} step{'' if run.steps == 1 else 's'}"
+    sides = ", ".join(
+        f"{name} {words.number(left, 3)} {'<=' if left <= right else '>'} {words.number(right, 3)}"
+        for name, left, right in verdict.sides
+        if name in LEFT_SIDES
+    )
+    test = "" if sides.startswith(verdict.test) else verdict.test
+    parts = [part for part in (test, sides) if part]
+    return f"{OUTCOME_WORDS[run.ending.outcome]} after {steps}: {', '.join(parts)}"
 
 
 class _Words:

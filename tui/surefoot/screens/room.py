@@ -5,6 +5,7 @@ Rooms are thin. They read the session's frozen state, draw it, and send commands
 
 from __future__ import annotations
 
+from textwrap import wrap
 from typing import TYPE_CHECKING, Any, ClassVar, cast
 
 from rich.text import Text
@@ -30,7 +31,7 @@ class Room(Screen[None]):
     """A screen with our frame. Subclasses give `place`, `compose_body` and `draw`."""
 
     place: ClassVar[str]
-    foot_lines: ClassVar[int] = 1
+    foot_lines: ClassVar[int] = 2
 
     def __init__(self) -> None:
         super().__init__()
@@ -59,7 +60,7 @@ class Room(Screen[None]):
         return "", ""
 
     def foot(self) -> list[Text]:
-        """Lines above the message and the key line, `foot_lines` - 1 of them."""
+        """Lines above the message; those that its own lines leave room for are shown."""
         return []
 
     def keep_draft(self) -> None:
@@ -94,12 +95,13 @@ class Room(Screen[None]):
         self.redraw_foot()
 
     def redraw_foot(self) -> None:
-        lines: list[Text] = [self.styled(self.surefoot.rule(self.size.width), "quiet")]
-        above = self.foot()[: self.foot_lines - 1]
-        lines += above + [Text("")] * (self.foot_lines - 1 - len(above))
-        lines.append(self.styled(" " + self.message, self.message_kind) if self.message else self.remark())
-        lines.append(self._key_line())
-        self.query_one("#foot", Lines).show(lines)
+        width = max(self.size.width - 2, 10)
+        said = [self.styled(" " + line, self.message_kind) for line in wrap(self.message, width)]
+        below = said[: self.foot_lines] or [self.remark()]
+        above = self.foot()[: self.foot_lines - len(below)]
+        blank = [Text("")] * (self.foot_lines - len(above) - len(below))
+        rule = self.styled(self.surefoot.rule(self.size.width), "quiet")
+        self.query_one("#foot", Lines).show([rule, *above, *blank, *below, self._key_line()])
 
     def remark(self) -> Text:
         """What stands in the message line while there is no message."""

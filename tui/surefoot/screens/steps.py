@@ -15,7 +15,7 @@ from surefoot.equation.results import Failure, Real
 from surefoot.errors import Refused, SurefootError
 from surefoot.figures.numbers import short, significant
 from surefoot.methods.trial import Landing
-from surefoot.screens.account import account_words
+from surefoot.screens.account import account_words, ending_sentence
 from surefoot.screens.commands import bindings_of
 from surefoot.screens.dialogs import Ask, Choose
 from surefoot.screens.pictures import convergence_lines, step_lines
@@ -119,7 +119,7 @@ class StepsRoom(Room):
         run = self.run
         if run is None or run.ending is None:
             return Text("")
-        return self.styled(f" {run.ending.says}"[: self.size.width], "heading")
+        return self.styled(f" {ending_sentence(run)}"[: self.size.width], "heading")
 
     # -- keys -------------------------------------------------------------------------------------------------------
 
