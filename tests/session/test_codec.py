@@ -78,7 +78,7 @@ def test_every_event_is_told_in_a_few_words(varied: Session) -> None:
     assert words[1] == "problem_stated: problem 1: Q = Qd"
     assert words[2] == "run_begun: run 1: secant"
     assert words[3].startswith("step_taken: k = 2: x = ")
-    assert words[5].startswith("iterate_put: k = 4: x = 1.5, f = ")
+    assert words[5].startswith("iterate_put: k = 4: x = 1.5, residual ")
     assert words[5].endswith(" (from the log)")
     assert words[6].startswith("run_begun: run 2: newton-raphson, from run 1 at k = 2")
     assert words[-6:] == [

@@ -52,6 +52,8 @@ def ending_sentence(run: Run) -> str:
         for name, left, right in verdict.sides
         if name in LEFT_SIDES
     )
+    if verdict.test == "exact_zero":
+        sides = "the residual is exactly zero"
     test = "" if sides.startswith(verdict.test) else verdict.test
     parts = [part for part in (test, sides) if part]
     return f"{OUTCOME_WORDS[run.ending.outcome]} after {steps}: {', '.join(parts)}"

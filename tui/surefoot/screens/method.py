@@ -171,7 +171,7 @@ class MethodRoom(Room):
         value = "no value there" if f is None else significant(f, 4)
         return self.styled(
             f" start {self.picking.number}: {problem.unknown} = {self.picking.text}, residual {value}"
-            "   left, right move   enter takes it   esc leaves",
+            "   left right move, enter takes, esc leaves",
             "value",
         )
 
@@ -246,7 +246,8 @@ class MethodRoom(Room):
         if window is None:
             self.say("give the working range (1 function) or type a start first", "alert")
             return
-        self.picking = Picking(1, *window, max(self.query_one("#start-picture", Lines).size.width, 2))
+        cells = max(self.query_one("#start-picture", Lines).size.width, 2)
+        self.picking = Picking(1, *window, cells, cells // 2)
 
     def _take_picked(self, picked: Picking) -> None:
         self.form = self.form.with_value(f"start {picked.number}", picked.text)

@@ -193,6 +193,6 @@ def _begun_words(begun: RunBegun) -> str:
 def _iterate_words(iterate: Iterate | None) -> str:
     if iterate is None:
         return ""
-    value = str(iterate.f) if isinstance(iterate.f, Failure) else f"f = {float(iterate.f):.4g}"
+    value = str(iterate.f) if isinstance(iterate.f, Failure) else f"residual {float(iterate.f):.4g}"
     by_hand = f" ({iterate.put})" if iterate.put else ""
     return f"k = {iterate.k}: x = {float(iterate.x):.12g}, {value}{by_hand}"
