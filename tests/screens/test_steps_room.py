@@ -96,6 +96,11 @@ async def test_trial_steps_spend_no_step_and_no_event(tmp_path: Path) -> None:
         assert app.session is not None
         assert app.session.state.events == events
         text = screen_text(app)
+        while "newton-raphson  " not in text.partition("would land at")[2]:
+            await pilot.press("down")
+            await pilot.pause()
+            assert screen_text(app) != text
+            text = screen_text(app)
         landed = next(line.split()[1] for line in text.splitlines() if line.strip().startswith("newton-raphson  "))
         await pilot.press("t", "space")
         await pilot.pause()

@@ -82,7 +82,7 @@ def _flag(iterate: Iterate) -> str:
 
 def landing_lines(rows: Sequence[tuple[str, str, str, str]], width: int) -> list[str]:
     """The table of trial steps from (method, x, |residual|, why it cannot step or there is no residual)."""
-    lines = ["", f"   {'method':<26}{'would land at':<20}|residual| there", ""]
+    lines = [f"   {'method':<26}{'would land at':<20}|residual| there"]
     for method, x, residual, words in rows:
         if words and not residual:
             lines.append(f"   {method:<26}{x + '  ' if x else ''}{words}")

@@ -46,6 +46,7 @@ class StepsRoom(Room):
         self.behind = 0
         self.convergence, self.zoomed = False, False
         self.landings: list[str] | None = None
+        self.top = 0
 
     def compose_body(self) -> ComposeResult:
         with Horizontal():
@@ -81,17 +82,24 @@ class StepsRoom(Room):
         log.styles.width = _WIDE_TABLE_CELLS if wide else min(_TABLE_CELLS, self.size.width)
         if self.landings is not None:
             log.styles.width = self.size.width
-            log.show([Text(line) for line in self.landings])
+            self.top = max(0, min(self.top, len(self.landings) - self._rows))
+            rest = self.landings[1 + self.top :]
+            log.show([self.styled(self.landings[0], "quiet"), *(Text(line) for line in rest)])
             picture.show([])
             return
         self.behind = max(0, min(self.behind, len(run.iterates) - 1))
-        height = max(self.size.height - 4 - self.foot_lines - 2, 1)
+        height = self._rows
         window = window_of(run, self.behind, height - 1)
         width = (_WIDE_TABLE_CELLS if wide else _TABLE_CELLS) - 1
         rows = table_lines(run, window, width - 2, height - 1)
         lines = [self._row(text, at, width - 2) for text, at in rows]
         log.show(lines + [self._row("", False, width - 2)] * (height - len(lines)))
         self._draw_picture(picture, run, window, self.size.width - width - 1, height)
+
+    @property
+    def _rows(self) -> int:
+        """Lines of the body."""
+        return max(self.size.height - 4 - self.foot_lines - 2, 1)
 
     def _row(self, text: str, at: bool, width: int) -> Text:
         """One line of the table, and the light line that parts it from the picture."""
@@ -117,6 +125,8 @@ class StepsRoom(Room):
 
     def remark(self) -> Text:
         run = self.run
+        if self.landings is not None:
+            return self.styled(" trial steps: none of them is taken   up, down move   t goes back", "quiet")
         if run is None or run.ending is None:
             return Text("")
         return self.styled(f" {ending_sentence(run)}"[: self.size.width], "heading")
@@ -124,15 +134,22 @@ class StepsRoom(Room):
     # -- keys -------------------------------------------------------------------------------------------------------
 
     def action_move(self, by: int) -> None:
-        self.behind += by
+        self._move(by)
         self.message = ""
         self.redraw()
 
+    def _move(self, by: int) -> None:
+        """Go back `by` iterates in the log, or up as many trial steps."""
+        if self.landings is not None:
+            self.top -= by
+        else:
+            self.behind += by
+
     def do_earlier(self) -> None:
-        self.behind += 1
+        self._move(1)
 
     def do_later(self) -> None:
-        self.behind -= 1
+        self._move(-1)
 
     def do_step(self) -> None:
         self._stepping()
@@ -173,7 +190,7 @@ class StepsRoom(Room):
         except SurefootError as error:
             self.say(str(error), "alert")
             return
-        self.landings = [*landing_lines(self._landing_rows(run, landings), self.size.width - 1), "", "   t goes back"]
+        self.landings, self.top = landing_lines(self._landing_rows(run, landings), self.size.width - 1), 0
 
     def _landing_rows(self, run: Run, landings: Sequence[Landing]) -> list[tuple[str, str, str, str]]:
         rows = []
