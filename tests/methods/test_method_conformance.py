@@ -28,6 +28,11 @@ BINARY64 = arithmetic_of("binary64")
 REQUIRED = {"h": "1e-6", "g": "cos(x)"}
 """A value for each setting that some method cannot do without."""
 
+MIDDLE_FIRST = ("safeguarded-newton",)
+"""Methods whose first step is the middle of the bracket and takes no derivative."""
+CYCLES = {"illinois": 3, "anderson-bjorck": 3, "ridders": 2}
+"""Steps after which the error falls as before, where that is not at every step: the order is that of a cycle."""
+
 every_method = pytest.mark.parametrize("code", METHODS)
 
 
@@ -156,7 +161,8 @@ def test_a_step_evaluates_what_the_traits_declare(code: str) -> None:
     trail = walk_rule(method, functions, 3)
     counts = tuple(functions.calls.count(what) for what in ("f", "derivative", "g"))
     f, derivative, g = method.traits.evaluations
-    assert counts == ((f - 1) * len(trail), derivative * len(trail), g * len(trail))
+    without = derivative if code in MIDDLE_FIRST else 0
+    assert counts == ((f - 1) * len(trail), derivative * len(trail) - without, g * len(trail))
 
 
 @every_method
@@ -167,7 +173,8 @@ def test_a_run_is_charged_what_the_traits_declare(code: str) -> None:
     walk = run(Plan(code, ("0.25", "1.75")[: method.traits.starts], 3, settings, stop=Stop()), problem)
     spent = walk.spent
     f, derivative, g = method.traits.evaluations
-    assert (spent.f, spent.derivative, spent.g) == (method.traits.starts + 3 * f, 3 * derivative, 3 * g)
+    without = derivative if code in MIDDLE_FIRST else 0
+    assert (spent.f, spent.derivative, spent.g) == (method.traits.starts + 3 * f, 3 * derivative - without, 3 * g)
     assert [piece.spent.f for piece in walk.pieces] == [f] * 3
 
 
@@ -203,19 +210,21 @@ def test_the_measured_order_is_the_declared_one(code: str) -> None:
     precise = run(
         Plan("newton-raphson", ("1.1",), 14, stop=Stop(), arithmetic="multiprecision:1000"), problem, limit=14
     )
-    errors = [abs(x - precise.x[-1]) for x in walk.x][-3:]
+    cycle = CYCLES.get(code, 1)
+    errors = [abs(x - precise.x[-1]) for x in walk.x][-1 - 2 * cycle :: cycle]
     ln = arithmetic_of("multiprecision:1000").functions["ln"]
     measured = ln(errors[2] / errors[1]) / ln(errors[1] / errors[0])
-    assert float(measured) == pytest.approx(method.traits.order, abs=0.03)
+    assert float(measured) ** (1 / cycle) == pytest.approx(method.traits.order, abs=0.03)
 
 
-@every_method
+@pytest.mark.parametrize("code", [code for code, method in METHODS.items() if method.traits.bracket])
 @given(data=st.data())
 def test_a_bracket_never_widens_and_keeps_its_sign_change(code: str, data: st.DataObject) -> None:
-    """Whatever point inside was taken in the place of the one proposed; a point outside leaves it as it is."""
+    """Whatever point inside was taken in the place of the one proposed; a point outside leaves it as it is.
+
+    Points that the rule evaluated on its way cut the bracket too, and may cut off the point taken.
+    """
     method = METHODS[code]
-    if not method.traits.bracket:
-        return
     settings = settings_of(method)
     functions = Counting(kepler, kepler_slope)
     state = method.begin(starts_of(method, kepler), settings, functions)
@@ -228,7 +237,10 @@ def test_a_bracket_never_widens_and_keeps_its_sign_change(code: str, data: st.Da
         state = method.accept(state, proposal, Point(x, kepler(x)))
         assert low <= min(state.a.x, state.b.x) <= max(state.a.x, state.b.x) <= high
         assert sign(state.a.f) != sign(state.b.f)
-        if not low <= x <= high:
+        inner = {point.x for point in proposal.account.points} - {low, high} if method.traits.evaluations[0] > 1 else ()
+        if any(point in (state.a.x, state.b.x) for point in inner):
+            assert state.b.x - state.a.x < high - low
+        elif not low <= x <= high:
             assert sorted((state.a.x, state.b.x)) == [low, high]
         else:
             assert x in (state.a.x, state.b.x)
@@ -279,6 +291,10 @@ def test_a_value_that_there_is_not_is_carried_past_the_rule(code: str) -> None:
     method, settings = METHODS[code], settings_of(METHODS[code])
     functions = Counting(fails, fails, fails)
     state = method.begin(starts_of(method, kepler), settings, functions)
+    if code in MIDDLE_FIRST:
+        middle = method.propose(state, settings, functions)
+        assert isinstance(middle, Proposal)
+        state = method.accept(state, middle, Point(middle.x, kepler(middle.x)))
     if method.traits.evaluations == (1, 0, 0):
         assert isinstance(method.propose(state, settings, functions), Proposal)
     else:

@@ -14,9 +14,14 @@ from hypothesis import strategies as st
 from surefoot.equation.choice import arithmetic_of
 from surefoot.equation.results import Failure, FailureKind, Real
 from surefoot.errors import RecordError
-from surefoot.methods.bisection import BracketState
+from surefoot.methods.bracket import BracketState
+from surefoot.methods.brent_dekker import BrentState
+from surefoot.methods.chandrupatla import ThreePointState
 from surefoot.methods.contract import Account, Ending, Iterate, Limited, Point, Spent, Verdict
+from surefoot.methods.false_position import KeptState
 from surefoot.methods.fixed_point import IterateState
+from surefoot.methods.itp import ItpState
+from surefoot.methods.safeguarded_newton import SafeguardedState
 from surefoot.methods.secant import ChordState
 from surefoot.methods.states import (
     decode_ending,
@@ -30,6 +35,7 @@ from surefoot.methods.states import (
 )
 from surefoot.methods.table import METHODS, method_of
 from surefoot.methods.tangent import SlopeState
+from surefoot.methods.toms_748 import Toms748State
 
 BINARY64 = arithmetic_of("binary64")
 
@@ -37,6 +43,17 @@ reals = st.floats(allow_nan=False, allow_infinity=False)
 points = st.builds(Point, reals, reals)
 STATES = {
     "bisection": st.builds(BracketState, points, points),
+    "regula-falsi": st.builds(BracketState, points, points),
+    "illinois": st.builds(KeptState, points, points, reals),
+    "anderson-bjorck": st.builds(KeptState, points, points, reals),
+    "ridders": st.builds(BracketState, points, points),
+    "brent-dekker": st.builds(BrentState, points, points, points, reals, reals),
+    "chandrupatla": st.builds(ThreePointState, points, points, st.none() | points),
+    "toms-748": st.builds(
+        Toms748State, points, points, reals, st.integers(0, 4), st.none() | points, st.none() | points
+    ),
+    "itp": st.builds(ItpState, points, points, reals),
+    "safeguarded-newton": st.builds(SafeguardedState, points, points, reals, reals, st.none() | points),
     "secant": st.builds(ChordState, points, points),
     "finite-difference-newton": st.builds(SlopeState, points, st.none() | reals, st.integers(0, 2**53 - 1)),
     "fixed-point": st.builds(IterateState, points),

@@ -13,6 +13,7 @@ from surefoot.equation.problem import Derivative, Input, Problem
 from surefoot.methods.contract import Begun, Ending, Iterate, Progress, Spent, State, Stepped
 from surefoot.methods.plan import Plan
 from surefoot.methods.stepper import Stepper
+from surefoot.methods.table import method_of
 
 
 @dataclass(frozen=True, slots=True)
@@ -69,7 +70,7 @@ def stepper_for(plan: Plan, problem: Problem, derivatives: tuple[Derivative, ...
     """The stepper of a plan on a problem, with the first derivative where the method needs it."""
     checked = check_problem(problem)
     if derivatives is None:
-        derivatives = (first_derivative(problem),) if plan.method == "newton-raphson" else ()
+        derivatives = (first_derivative(problem),) if method_of(plan.method).traits.derivatives else ()
     return Stepper(plan, checked, derivatives)
 
 

@@ -18,11 +18,8 @@ Source: B. Bolzano 1817 for the argument; the rule is folklore (from memory).
 
 from __future__ import annotations
 
-from dataclasses import dataclass
-
-from surefoot.equation.arithmetic import OperationFailed
+from surefoot.methods.bracket import BracketState, contains, halved, narrowed, without_sign_change
 from surefoot.methods.contract import (
-    Account,
     Breakdown,
     Functions,
     Point,
@@ -31,15 +28,7 @@ from surefoot.methods.contract import (
     Settings,
     Traits,
 )
-from surefoot.methods.rounding import half_sum, offset_midpoint, sign, told
-
-
-@dataclass(frozen=True, slots=True)
-class BracketState:
-    """The ends of a bracket with a sign change, in the order in which they were given."""
-
-    a: Point
-    b: Point
+from surefoot.methods.rounding import half_sum, offset_midpoint
 
 
 class Bisection:
@@ -72,29 +61,12 @@ class Bisection:
 
     def begin(self, starts: tuple[Point, ...], settings: Settings, functions: Functions) -> BracketState | Breakdown:
         a, b = starts
-        if sign(a.f) == sign(b.f) != 0:
-            arithmetic = functions.arithmetic
-            at_a, at_b = (f"f({told(arithmetic, p.x)}) = {told(arithmetic, p.f)}" for p in (a, b))
-            return Breakdown(f"no sign change between the starts: {at_a}, {at_b}", Account("bracket", (a, b)))
-        return BracketState(a, b)
+        return without_sign_change(functions.arithmetic, a, b) or BracketState(a, b)
 
     def propose(self, state: BracketState, settings: Settings, functions: Functions) -> Proposal | Breakdown:
-        arithmetic = functions.arithmetic
         middle = half_sum if settings["midpoint"] == "halfsum" else offset_midpoint
-        points = (state.a, state.b)
-        try:
-            width = abs(arithmetic.subtract(state.b.x, state.a.x))
-            x = middle(arithmetic, state.a.x, state.b.x)
-        except OperationFailed:
-            ends = f"{told(arithmetic, state.a.x)} and {told(arithmetic, state.b.x)}"
-            return Breakdown(f"the middle of {ends} overflows", Account("bracket", points))
-        return Proposal(x, Account("bracket", points, figures=(("width", width),)))
+        return halved(functions.arithmetic, state.a, state.b, middle)
 
     def accept(self, state: BracketState, proposal: Proposal, point: Point) -> BracketState:
         """The part of the bracket that keeps the sign change; a point outside the bracket changes nothing."""
-        low, high = sorted((state.a.x, state.b.x))
-        if not low <= point.x <= high:
-            return state
-        if sign(point.f) == sign(state.a.f):
-            return BracketState(point, state.b)
-        return BracketState(state.a, point)
+        return BracketState(*narrowed(state.a, state.b, point)) if contains(state.a, state.b, point.x) else state

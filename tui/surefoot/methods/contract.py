@@ -123,6 +123,7 @@ class Setting:
     Attributes:
         kind: "real" (a literal of the arithmetic), "choice", "expression" (over the unknown) or "flag".
         default: text used when the key is absent; None when the key is required.
+        allowed: the interval that a real must lie in, as `[0, inf)`; empty where any number will do.
     """
 
     key: str
@@ -130,6 +131,7 @@ class Setting:
     default: str | None
     meaning: str
     choices: tuple[str, ...] = ()
+    allowed: str = ""
 
 
 class Method(Protocol):

@@ -7,6 +7,7 @@ from __future__ import annotations
 
 from surefoot.equation.arithmetic import Arithmetic
 from surefoot.equation.results import Real
+from surefoot.methods.contract import Point
 
 _LONGEST_FIGURE = 24  # a binary64 in its shortest decimal form never needs more
 
@@ -35,3 +36,8 @@ def told(arithmetic: Arithmetic, x: Real) -> str:
     """A figure as a sentence quotes it: every digit of a binary64 or binary32, 17 digits of a longer number."""
     text = arithmetic.encode(x).rpartition(":")[2]
     return text if len(text) <= _LONGEST_FIGURE else repr(arithmetic.approximate(x))
+
+
+def told_values(arithmetic: Arithmetic, points: tuple[Point, ...]) -> str:
+    """Points as a sentence quotes them: `f(1.0) = -1.0, f(2.0) = 2.0`."""
+    return ", ".join(f"f({told(arithmetic, point.x)}) = {told(arithmetic, point.f)}" for point in points)

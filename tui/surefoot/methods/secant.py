@@ -22,7 +22,7 @@ from __future__ import annotations
 from dataclasses import dataclass
 
 from surefoot.equation.arithmetic import Arithmetic, OperationFailed
-from surefoot.equation.results import Real
+from surefoot.methods.chord import FORMS, chord_zero
 from surefoot.methods.contract import (
     Account,
     Breakdown,
@@ -33,7 +33,7 @@ from surefoot.methods.contract import (
     Settings,
     Traits,
 )
-from surefoot.methods.rounding import told
+from surefoot.methods.rounding import told_values
 
 
 @dataclass(frozen=True, slots=True)
@@ -67,7 +67,7 @@ class Secant:
             default="product",
             meaning="how the step is computed: product f1*(x1-x0)/(f1-f0), ratio f1/(f1-f0)*(x1-x0), "
             "slope f1/((f1-f0)/(x1-x0)), or the new x symmetric (x0*f1-x1*f0)/(f1-f0)",
-            choices=("product", "slope", "symmetric", "ratio"),
+            choices=FORMS,
         ),
     )
     state_type = ChordState
@@ -93,32 +93,10 @@ class Secant:
 
 def _breakdown(arithmetic: Arithmetic, state: ChordState, reason: str) -> Breakdown:
     points = (state.older, state.newer)
-    values = ", ".join(f"f({told(arithmetic, point.x)}) = {told(arithmetic, point.f)}" for point in points)
-    return Breakdown(f"{reason}: {values}", Account("chord", points))
+    return Breakdown(f"{reason}: {told_values(arithmetic, points)}", Account("chord", points))
 
 
 def _landing(arithmetic: Arithmetic, state: ChordState, form: str) -> Proposal:
-    """The zero of the chord, in the operations of `form`. Raises OperationFailed when one of them has no value."""
-    x0, f0, x1, f1 = state.older.x, state.older.f, state.newer.x, state.newer.f
-    multiply, divide, subtract = arithmetic.multiply, arithmetic.divide, arithmetic.subtract
-    points = (state.older, state.newer)
-    run, rise = subtract(x1, x0), subtract(f1, f0)
-    slope = _shown_slope(arithmetic, rise, run)
-    if form == "symmetric":
-        x = divide(subtract(multiply(x0, f1), multiply(x1, f0)), rise)
-        return Proposal(x, Account("chord", points, slope))
-    if form == "slope":
-        back = divide(f1, divide(rise, run))
-    elif form == "ratio":
-        back = multiply(divide(f1, rise), run)
-    else:
-        back = divide(multiply(f1, run), rise)
-    return Proposal(subtract(x1, back), Account("chord", points, slope, step=arithmetic.negate(back)))
-
-
-def _shown_slope(arithmetic: Arithmetic, rise: Real, run: Real) -> Real | None:
-    """The slope of a chord whose step is computed without it: None where it would overflow."""
-    try:
-        return arithmetic.divide(rise, run)
-    except OperationFailed:
-        return None
+    """The zero of the chord. Raises OperationFailed when an operation of the form has no value."""
+    zero = chord_zero(arithmetic, state.older, state.newer, form)
+    return Proposal(zero.x, Account("chord", (state.older, state.newer), zero.slope, step=zero.step))

@@ -66,7 +66,10 @@ def _not_taken(method: Method, key: str, known: Mapping[str, Setting]) -> str:
 def _read(setting: Setting, text: str, arithmetic: Arithmetic) -> Any:
     key = f"plan.settings.{setting.key}"
     if setting.kind == "real":
-        return read_number(text, arithmetic, key)
+        number = read_number(text, arithmetic, key)
+        if setting.allowed and not _lies_in(number, setting.allowed):
+            raise PlanError(f"{text} lies outside {setting.allowed}", key=key)
+        return number
     if setting.kind == "flag":
         if text not in ("true", "false"):
             raise PlanError(f"{text!r} is neither true nor false", key=key)
@@ -76,3 +79,11 @@ def _read(setting: Setting, text: str, arithmetic: Arithmetic) -> Any:
         offered = f"nearest: {meant}" if meant else f"it can be {', '.join(setting.choices)}"
         raise PlanError(f"there is no {text!r}; {offered}", key=key)
     return text
+
+
+def _lies_in(number: Real, interval: str) -> bool:
+    """Whether a number lies in an interval as `[0, inf)`: a square bracket takes its end in, a round one does not."""
+    low, high = (float(end) for end in interval[1:-1].split(","))
+    above = number >= low if interval[0] == "[" else number > low
+    below = number <= high if interval[-1] == "]" else number < high
+    return bool(above and below)

@@ -8,28 +8,43 @@ from types import MappingProxyType
 
 from surefoot.equation.functions import nearest
 from surefoot.errors import PlanError
+from surefoot.methods.anderson_bjorck import AndersonBjorck
 from surefoot.methods.bisection import Bisection
+from surefoot.methods.brent_dekker import BrentDekker
+from surefoot.methods.chandrupatla import Chandrupatla
 from surefoot.methods.contract import Method, Traits
 from surefoot.methods.finite_difference_newton import FiniteDifferenceNewton
 from surefoot.methods.fixed_point import FixedPoint
+from surefoot.methods.illinois import Illinois
+from surefoot.methods.itp import Itp
 from surefoot.methods.newton_raphson import NewtonRaphson
+from surefoot.methods.regula_falsi import RegulaFalsi
+from surefoot.methods.ridders import Ridders
+from surefoot.methods.safeguarded_newton import SafeguardedNewton
 from surefoot.methods.secant import Secant
+from surefoot.methods.toms_748 import Toms748
 
-_ROWS: tuple[Method, ...] = (Bisection(), Secant(), FiniteDifferenceNewton(), FixedPoint(), NewtonRaphson())
+_ROWS: tuple[Method, ...] = (
+    Bisection(),
+    RegulaFalsi(),
+    Illinois(),
+    AndersonBjorck(),
+    Ridders(),
+    BrentDekker(),
+    Chandrupatla(),
+    Toms748(),
+    Itp(),
+    SafeguardedNewton(),
+    Secant(),
+    FiniteDifferenceNewton(),
+    FixedPoint(),
+    NewtonRaphson(),
+)
 
 METHODS: Mapping[str, Method] = MappingProxyType({method.traits.code: method for method in _ROWS})
 
 PLANNED = frozenset(
     [
-        "regula-falsi",
-        "illinois",
-        "anderson-bjorck",
-        "ridders",
-        "brent-dekker",
-        "chandrupatla",
-        "toms-748",
-        "itp",
-        "safeguarded-newton",
         "steffensen",
         "muller",
         "inverse-quadratic",
