@@ -1,4 +1,4 @@
-"""The records that are shipped with the project: whole, and made again to the bit where the mathematics library is theirs."""
+"""The records shipped with the project: whole, and made again to the bit with the mathematics library they name."""
 
 from __future__ import annotations
 
