@@ -10,6 +10,7 @@ from support.screens import TAILRACE, program, screen_text, tailrace_session, wa
 from surefoot.screens.commands import EVERYWHERE, FIELD, PLACES, ROOMS, keys_of
 from surefoot.screens.driver import AsciiDriver, wants_ascii
 from surefoot.screens.leaving import leaving_line
+from surefoot.screens.looks import LOOKS
 from surefoot.screens.opening import OpeningRoom, session_lines
 from surefoot.screens.rooms import make_room
 from surefoot.screens.steps import StepsRoom
@@ -166,3 +167,17 @@ def test_the_ascii_driver_sends_one_ascii_cell_for_every_glyph() -> None:
     sent = shown.translate(AsciiDriver._translation)
     assert sent.isascii()
     assert len(sent) == len(shown)
+
+
+@pytest.mark.parametrize("look", LOOKS)
+@pytest.mark.parametrize("ascii_only", [False, True])
+async def test_every_look_shows_the_same_text(tmp_path: Path, look: str, ascii_only: bool) -> None:
+    app = program(tmp_path, target=tailrace_session(tmp_path), look=look, ascii_only=ascii_only)
+    async with app.run_test(size=SIZE) as pilot:
+        await wait_until(pilot, lambda: app.session is not None)
+        await pilot.press("space", "space")
+        await pilot.pause()
+        text = screen_text(app)
+        assert "slope 66.41" in text
+        assert "2  '3.6744937709969063 +4.28e+01 -2.4e+00" in text
+        assert text.isascii() is ascii_only
