@@ -159,3 +159,18 @@ async def test_any_size_of_terminal_is_survived(tmp_path: Path, size: tuple[int,
         await pilot.pause()
         assert run_of(app).steps == 2
         assert app.fault is None
+
+
+async def test_a_fixed_point_run_is_drawn_as_its_path_between_g_and_the_diagonal(tmp_path: Path) -> None:
+    shipped = next((Path(__file__).parents[2] / "sessions").glob("*compressibility*.json"))
+    path = tmp_path / "accumulator.json"
+    path.write_bytes(shipped.read_bytes())
+    app = program(tmp_path, target=path)
+    async with app.run_test(size=(100, 30)) as pilot:
+        await wait_until(pilot, lambda: app.session is not None)
+        await pilot.press("r", "up", "enter")
+        await wait_until(pilot, lambda: run_of(app).number == 1)
+        text = screen_text(app)
+        assert "Step to 30: Z = g(0.98251701), dZ = -1.68e-08." in text
+        assert "2.0 g" in text
+        assert "30 steps taken and no test fired: |dx| = 1.6828717419592465e-08 > 1e-08" in text

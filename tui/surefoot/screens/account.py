@@ -43,7 +43,7 @@ def ending_sentence(run: Run) -> str:
     """How the run ended, with both sides of the tests that took part in short figures."""
     if run.ending is None:
         return ""
-    if run.ending.verdict is None:
+    if run.ending.verdict is None or run.ending.outcome != "converged":
         return run.ending.says
     words, verdict = _Words(run), run.ending.verdict
     steps = f"{run.steps} step{'' if run.steps == 1 else 's'}"

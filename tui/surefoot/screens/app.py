@@ -20,6 +20,7 @@ from textual.binding import Binding, BindingType
 
 from surefoot.errors import Refused, SurefootError
 from surefoot.figures.characters import ASCII, UNICODE, Characters
+from surefoot.methods.plan import Plan
 from surefoot.screens.commands import Key
 from surefoot.screens.dialogs import Ask
 from surefoot.screens.driver import AsciiDriver, environment_at_start, wants_ascii
@@ -262,10 +263,10 @@ class SurefootApp(App[int], inherit_bindings=False):
     def style_of(self, kind: Kind) -> str:
         return self.look.styles[kind]
 
-    def sampler(self, stated: StatedProblem) -> Sampler:
-        """Values of f for the pictures of a problem."""
-        if self._sampler is None or self._sampler.stated is not stated:
-            self._sampler = Sampler(stated)
+    def sampler(self, stated: StatedProblem, plan: Plan | None = None) -> Sampler:
+        """Values for the pictures of a problem, and of a run's plan."""
+        if self._sampler is None or self._sampler.stated is not stated or self._sampler.plan != plan:
+            self._sampler = Sampler(stated, plan)
         return self._sampler
 
     def rule(self, width: int) -> str:

@@ -15,14 +15,17 @@ from surefoot.equation.binary64 import BINARY64
 from surefoot.equation.checking import check_problem
 from surefoot.equation.choice import arithmetic_of
 from surefoot.equation.function import Function
-from surefoot.equation.meter import Meter
+from surefoot.equation.meter import Meter, What
 from surefoot.equation.results import Failure, Purpose, Real, Stopped
 from surefoot.figures.characters import Characters
+from surefoot.figures.cobweb_picture import cobweb_picture
 from surefoot.figures.convergence_picture import convergence_picture
 from surefoot.figures.function_picture import Samples, StepShape, function_picture, zoom
 from surefoot.figures.picture import Axis, Mark, Vertical
 from surefoot.figures.plot import draw
 from surefoot.methods.contract import Account, Iterate
+from surefoot.methods.plan import Plan
+from surefoot.methods.preparation import prepare
 from surefoot.screens.step_table import Window
 from surefoot.session.state import Run, StatedProblem
 
@@ -36,19 +39,24 @@ _CONVERGENCE_STEPS = 400
 
 
 class Sampler:
-    """Values of f of one problem for pictures, kept by window."""
+    """Values of f of one problem, and of g of one plan, for pictures; kept by window."""
 
-    def __init__(self, stated: StatedProblem) -> None:
-        self.stated = stated
-        self.meter = Meter(Function(check_problem(stated.problem), BINARY64, stated.derivatives))
-        self._kept: OrderedDict[tuple[float, float, int], Samples] = OrderedDict()
+    def __init__(self, stated: StatedProblem, plan: Plan | None = None) -> None:
+        self.stated, self.plan = stated, plan
+        checked = check_problem(stated.problem)
+        if plan is None:
+            function = Function(checked, BINARY64, stated.derivatives)
+        else:
+            function = prepare(replace(plan, arithmetic=BINARY64.kind), checked, stated.derivatives).function
+        self.meter = Meter(function)
+        self._kept: OrderedDict[tuple[float, float, int, What], Samples] = OrderedDict()
 
-    def over(self, low: float, high: float, count: int) -> Samples:
-        """f at `count` places from low to high; None where it has no value."""
-        key = (low, high, count)
+    def over(self, low: float, high: float, count: int, what: What = "f") -> Samples:
+        """f, or g of the plan, at `count` places from low to high; None where it has no value."""
+        key = (low, high, count, what)
         if key not in self._kept:
             xs = [low * (1 - n / (count - 1)) + high * (n / (count - 1)) for n in range(count)]
-            self._kept[key] = (xs, [_finite(self.meter.evaluate(x, Purpose.PICTURE)) for x in xs])
+            self._kept[key] = (xs, [_finite(self.meter.evaluate(x, Purpose.PICTURE, what)) for x in xs])
             while len(self._kept) > _KEPT:
                 self._kept.popitem(last=False)
         self._kept.move_to_end(key)
@@ -106,6 +114,10 @@ def step_lines(
     if span is None:
         return []
     iterate = window.current
+    if iterate.account is not None and iterate.account.shape == "cobweb":
+        samples = _samples(sampler, span, width, "g")
+        path = [x for x, _ in points]
+        return draw(cobweb_picture(samples, iterates=path, x=_x_axis(sampler)), width, height, characters)
     shape = _shape(near, iterate, iterate.account) if iterate.account is not None else None
     picture = function_picture(
         _samples(sampler, span, width), iterates=points, step=shape, x=_x_axis(sampler), f=_RESIDUAL
@@ -124,8 +136,8 @@ def convergence_lines(run: Run, width: int, height: int, characters: Characters)
     return draw(convergence_picture(steps, name=run.stated.problem.unknown), width, height, characters)
 
 
-def _samples(sampler: Sampler, window: tuple[float, float], width: int) -> Samples:
-    return sampler.over(*window, max(width, 2) * _SAMPLES_A_CELL)
+def _samples(sampler: Sampler, window: tuple[float, float], width: int, what: What = "f") -> Samples:
+    return sampler.over(*window, max(width, 2) * _SAMPLES_A_CELL, what)
 
 
 def _x_axis(sampler: Sampler) -> Axis:

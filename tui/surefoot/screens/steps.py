@@ -111,7 +111,7 @@ class StepsRoom(Room):
         if self.convergence:
             view.show(convergence_lines(run, width, height, self.surefoot.characters))
             return
-        sampler = self.surefoot.sampler(run.stated)
+        sampler = self.surefoot.sampler(run.stated, run.plan)
         view.show(step_lines(sampler, run, window, self.zoomed, width, height, self.surefoot.characters))
 
     def foot(self) -> list[Text]:
