@@ -74,6 +74,7 @@ class SurefootApp(App[int], inherit_bindings=False):
         self.arithmetic = "binary64"
         self._sampler: Sampler | None = None
         self.fault: Exception | None = None
+        self.hung_up = False
         self._stop = threading.Event()
 
     # -- beginning and ending ---------------------------------------------------------------------------------------
@@ -91,6 +92,7 @@ class SurefootApp(App[int], inherit_bindings=False):
 
     def _ended_by(self, number: signal.Signals) -> None:
         self._keep_drafts()
+        self.hung_up = number == signal.SIGHUP
         self.exit(128 + number)
 
     def on_unmount(self) -> None:
@@ -284,6 +286,13 @@ class SurefootApp(App[int], inherit_bindings=False):
         return run_words(self.session.state) if self.session is not None else ""
 
 
+def _let_the_terminal_go() -> None:
+    """Lead all output to nowhere: the terminal is gone, and what is still buffered must not fail at the end."""
+    nowhere = os.open(os.devnull, os.O_RDWR)
+    for number in (0, 1, 2):
+        os.dup2(nowhere, number)
+
+
 def _name_fault(answer: str) -> str:
     return "" if answer.strip() else "a name is needed: every event of the record carries it"
 
@@ -310,6 +319,8 @@ def run_app(
         if stream is not None and hasattr(stream, "reconfigure"):
             stream.reconfigure(encoding="utf-8", errors="replace")
     result = app.run(mouse=False)
+    if app.hung_up:
+        _let_the_terminal_go()
     if app.fault is not None:
         raise app.fault
     return result if result is not None else int(app.return_code or 0)
