@@ -52,7 +52,7 @@ STATES = {
     "toms-748": st.builds(
         Toms748State, points, points, reals, st.integers(0, 4), st.none() | points, st.none() | points
     ),
-    "itp": st.builds(ItpState, points, points, reals),
+    "itp": st.builds(ItpState, points, points, reals, reals),
     "safeguarded-newton": st.builds(SafeguardedState, points, points, reals, reals, st.none() | points),
     "secant": st.builds(ChordState, points, points),
     "finite-difference-newton": st.builds(SlopeState, points, st.none() | reals, st.integers(0, 2**53 - 1)),

@@ -44,6 +44,7 @@ class AndersonBjorck:
         order=8 ** (1 / 4),
         source="N. Anderson, A. Bjorck, BIT 13 (1973) 253-264",
         cost_note="order 8 over four steps, or 5 over three, as the third derivative has it",
+        moves_on=True,
     )
     settings = (FORM,)
     state_type = KeptState

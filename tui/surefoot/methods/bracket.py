@@ -53,6 +53,12 @@ def narrowed(a: Point, b: Point, point: Point) -> tuple[Point, Point]:
     return (point, b) if sign(point.f) == sign(a.f) else (a, point)
 
 
+def neighbours(arithmetic: Arithmetic, x: Real, y: Real) -> bool:
+    """Whether no number of the arithmetic lies between x and y."""
+    larger = abs(x) if abs(x) > abs(y) else abs(y)
+    return bool(abs(x - y) <= arithmetic.spacing(larger))
+
+
 def held_between(a: Point, b: Point, x: Real) -> Real:
     """x itself, or the end beyond which rounding carried it."""
     low, high = (a.x, b.x) if a.x <= b.x else (b.x, a.x)

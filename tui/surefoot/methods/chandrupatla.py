@@ -82,6 +82,7 @@ class Chandrupatla:
         order=None,
         source="T. R. Chandrupatla, Adv. Eng. Software 28 (1997) 145-149",
         cost_note="order up to 1.839 once it interpolates",
+        moves_on=True,
     )
     settings = (
         tolerance_setting("x stays 2*eps*|x| and this clear of the ends; 0 leaves the rounding part"),

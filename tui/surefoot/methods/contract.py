@@ -99,6 +99,7 @@ class Traits:
         evaluations: new evaluations of (f, derivative, g) in one step, the f at the iterate taken included.
         order: theoretical order of convergence at a simple root, None where it has none in that sense.
         cost_note: words on cost or order that figures alone cannot say.
+        moves_on: a step from an iterate that repeats can still lead elsewhere, since the rule changes what it keeps.
         source: published source of the rule.
         revision: of our implementation; goes up whenever the bits of a step may change.
     """
@@ -114,6 +115,7 @@ class Traits:
     source: str
     revision: int = 1
     cost_note: str = ""
+    moves_on: bool = False
 
 
 @dataclass(frozen=True, slots=True)

@@ -44,6 +44,7 @@ class Illinois:
         order=3 ** (1 / 3),
         source="M. Dowell, P. Jarratt, BIT 11 (1971) 168-174",
         cost_note="order 3 over the three steps of a cycle",
+        moves_on=True,
     )
     settings = (FORM,)
     state_type = KeptState

@@ -9,11 +9,12 @@ Update rule, with a < b = `state.a`, `state.b`, m = (a + b)/2, w = b - a:
     x = t where |t - m| <= r, otherwise m moved towards t by r,  r = `state.reach` - w/2       project
     x replaces the end whose sign f has there; `state.reach` := reach/2
 At the start reach = epsilon*2^(n + n0), with n the least whole number for which epsilon*2^n >= w/2, the steps of
-bisection. r is taken as zero where it comes out below.
+bisection. The middle itself is taken where w <= 2*epsilon, where the published algorithm ends, and where r comes out
+below zero by more than rounding, since a point was taken that the rule did not propose.
 
-`tolerance` is epsilon of the published algorithm, there also the half width at which it ends; with 0 it is the rounding
-part alone, 2*eps*|x| of the larger start, eps the spacing of the numbers at 1. kappa1, kappa2, n0 are those of the
-published experiments: 0.1, 2 and 1; many codes have kappa1 = 0.2/(b - a).
+`tolerance` is epsilon of the published algorithm, `state.epsilon`; with 0 it is the rounding part alone, 2*eps*|x| of
+the larger start, eps the spacing of the numbers at 1. kappa1, kappa2, n0 are those of the published experiments: 0.1, 2
+and 1; many codes have kappa1 = 0.2/(b - a).
 
 A point taken in the place of x, by step control, counts as a step; one put by hand does not, since it costs no step of
 bisection's account. One outside the bracket changes nothing.
@@ -54,6 +55,8 @@ from surefoot.methods.contract import (
 )
 from surefoot.methods.guarded import Guarded, guarded, rounding_unit
 
+_ROUNDING = 4  # spacings of the numbers at the middle by which rounding may bring r below zero
+
 
 @dataclass(frozen=True, slots=True)
 class ItpState:
@@ -62,6 +65,7 @@ class ItpState:
     a: Point
     b: Point
     reach: Real
+    epsilon: Real
 
 
 class Itp:
@@ -80,6 +84,7 @@ class Itp:
         order=None,
         source="I. F. D. Oliveira, R. H. C. Takahashi, ACM TOMS 47 (2020) 5",
         cost_note="at most n0 steps more than bisection; order up to sqrt(kappa2) on the average",
+        moves_on=True,
     )
     settings = (
         Setting(key="kappa1", kind="real", default="0.1", meaning="in delta = kappa1*(b-a)^kappa2", allowed="(0, inf)"),
@@ -102,25 +107,25 @@ class Itp:
             return missing
         a, b = sorted(starts, key=lambda point: point.x)
         try:
-            return ItpState(a, b, _reach(arithmetic, a.x, b.x, settings))
+            return ItpState(a, b, *_reach(arithmetic, a.x, b.x, settings))
         except OperationFailed:
             return breakdown(arithmetic, "the width of the bracket or its reach overflows", starts)
 
     def propose(self, state: ItpState, settings: Settings, functions: Functions) -> Proposal | Breakdown:
         arithmetic = functions.arithmetic
-        a, b, reach = guarded(arithmetic, (state.a.x, state.b.x, state.reach))
+        a, b, reach, epsilon = guarded(arithmetic, (state.a.x, state.b.x, state.reach, state.epsilon))
         try:
             middle, radius = (a + b) / 2, reach - (b - a) / 2
-            radius = radius if radius > 0 else reach - reach
         except OperationFailed:
             return breakdown(arithmetic, "the middle overflows", (state.a, state.b))
-        figures = (*width_figure(arithmetic, state.a, state.b), ("radius", radius.value))
-        x = middle
-        found = _truncated(arithmetic, state, middle, settings)
+        figures = width_figure(arithmetic, state.a, state.b)
+        x, found = middle, None
+        if b - a > 2 * epsilon and radius >= -_ROUNDING * Guarded(arithmetic, arithmetic.spacing(middle.value)):
+            found = _truncated(arithmetic, state, middle, settings)
         if found is not None:
             truncated, zero, delta = found
-            figures = (*figures, ("chord_zero", zero.value), ("truncation", delta.value))
-            x = truncated if abs(truncated - middle) <= radius else _towards(middle, truncated, radius)
+            figures = (*figures, ("radius", radius.value), ("chord_zero", zero.value), ("truncation", delta.value))
+            x = truncated if abs(truncated - middle) <= radius else _towards(middle, zero, radius)
         account = Account("bracket", (state.a, state.b), figures=figures)
         return Proposal(held_between(state.a, state.b, x.value), account, True)
 
@@ -128,11 +133,11 @@ class Itp:
         if not contains(state.a, state.b, point.x):
             return state
         reach = state.reach if proposal.memo is None else state.reach / 2
-        return ItpState(*narrowed(state.a, state.b, point), reach)
+        return ItpState(*narrowed(state.a, state.b, point), reach, state.epsilon)
 
 
-def _reach(arithmetic: Arithmetic, a: Real, b: Real, settings: Settings) -> Real:
-    """epsilon*2^(n + n0): doubling is exact, so that no logarithm decides n. Raises OperationFailed."""
+def _reach(arithmetic: Arithmetic, a: Real, b: Real, settings: Settings) -> tuple[Real, Real]:
+    """epsilon*2^(n + n0) and epsilon: doubling is exact, so that no logarithm decides n. Raises OperationFailed."""
     low, high, epsilon, n0 = guarded(arithmetic, (a, b, settings["tolerance"], settings["n0"]))
     half = (high - low) / 2
     if not epsilon > 0:
@@ -140,9 +145,10 @@ def _reach(arithmetic: Arithmetic, a: Real, b: Real, settings: Settings) -> Real
         epsilon = 2 * rounding_unit(arithmetic) * larger
     if not epsilon > 0:
         epsilon = Guarded(arithmetic, arithmetic.spacing(arithmetic.integer(0)))
-    while epsilon < half:
-        epsilon = 2 * epsilon
-    return (epsilon * Guarded(arithmetic, arithmetic.integer(2)).power(n0)).value
+    reach = epsilon
+    while reach < half:
+        reach = 2 * reach
+    return (reach * Guarded(arithmetic, arithmetic.integer(2)).power(n0)).value, epsilon.value
 
 
 def _truncated(

@@ -80,6 +80,7 @@ class Ridders:
         order=2.0,
         source="C. J. F. Ridders, IEEE Trans. Circuits Syst. 26 (1979) 979-980",
         cost_note="one f at the middle, one at x; the bracket at least halves",
+        moves_on=True,
     )
     settings = (
         Setting(

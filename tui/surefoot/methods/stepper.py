@@ -15,6 +15,7 @@ from surefoot.equation.meter import Meter
 from surefoot.equation.problem import Derivative
 from surefoot.equation.results import EvaluationFailed, Failure, Purpose, Real, Stopped
 from surefoot.errors import PlanError
+from surefoot.methods.bracket import neighbours
 from surefoot.methods.contract import (
     Account,
     Begun,
@@ -228,7 +229,7 @@ class Stepper:
         if fired is not None:
             return self._endings.converged(fired, steps)
         repeats = stride.old is not None and same_bits(self._arithmetic, stride.new.x, stride.old.x)
-        if repeats and stride.new.raw is not None and not self._waits_for_a_count():
+        if repeats and stride.new.raw is not None and not self._goes_on(state):
             return self._endings.no_progress(stride.new)
         return None
 
@@ -237,9 +238,11 @@ class Stepper:
             return self._own_test.verdict(stride, state, steps, functions)
         return verdict(self._arithmetic, self._tolerances, stride)
 
-    def _waits_for_a_count(self) -> bool:
-        """Whether the host code goes on with an iterate that repeats, since it ends by counting its steps."""
-        return self._plan.stop.cap_is_success or (self._own_test is not None and self._own_test.counts_steps)
+    def _goes_on(self, state: State) -> bool:
+        """Whether a run goes on with an iterate that repeats: its end counts the steps, or its rule can still move."""
+        if self._plan.stop.cap_is_success or (self._own_test is not None and self._own_test.counts_steps):
+            return True
+        return self._method.traits.moves_on and not neighbours(self._arithmetic, state.a.x, state.b.x)
 
     # Numbers
 
