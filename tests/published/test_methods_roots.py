@@ -12,8 +12,18 @@ from decimal import Decimal
 import pytest
 import scipy.optimize
 
-from support.plain import MP
-from support.published import DIFFERENTIABLE, PUBLISHED, brackets, derivative, problem, residual, roots
+from support.published import (
+    DIFFERENTIABLE,
+    PRINTED,
+    PUBLISHED,
+    assert_as_printed,
+    attainable,
+    brackets,
+    derivative,
+    problem,
+    residual,
+    roots,
+)
 from support.runs import Walk, run
 from surefoot.methods.plan import Plan, Stop
 
@@ -24,18 +34,6 @@ every_root = pytest.mark.parametrize(("code", "index"), EVERY_ROOT)
 
 def solved(method: str, code: str, *starts: float, **settings: str) -> Walk:
     return run(Plan(method, tuple(map(repr, starts)), 100, tuple(settings.items()), stop=TIGHT), problem(code))
-
-
-def attainable(code: str, index: int) -> Decimal:
-    """How far from a root a solve in binary64 may end, relative: where the rounding errors of f hide its sign.
-
-    Four spacings of x, four times what a bracketing solve attained, and the bound of f's rounding error over its slope.
-    """
-    root = roots(code)[index]
-    value = residual(code).rounded()(root)
-    slope = MP.diff(residual(code).exact(), MP.mpf(root))
-    noise = float(value.error / abs(slope * root))
-    return Decimal(max(4 * 2.0**-52, 4 * PUBLISHED[code]["float64_root_rel_error"][index], 2 * noise))
 
 
 def assert_root(walk: Walk, code: str, index: int) -> None:
@@ -94,32 +92,13 @@ def test_newton_raphson_from_the_published_starts(code: str, start: int) -> None
 
 KINKS = {("gas-riemann-1", "0.1"), ("gas-riemann-3", "1000"), ("gas-riemann-4", "100")}
 
-PRINTED = [
-    (code, index)
-    for code, index in EVERY_ROOT
-    if PUBLISHED[code]["published_agrees"] and PUBLISHED[code]["roots"][index]["published"]
-]
-
 
 @pytest.mark.parametrize(
     ("code", "index"), PRINTED, ids=[f"{code}-{index}-{PUBLISHED[code]['source'][:40]}" for code, index in PRINTED]
 )
 def test_figures_as_printed(code: str, index: int) -> None:
-    """To half a unit of the last digit printed, to a whole one where the source is off by one; at best 8 spacings."""
-    root = PUBLISHED[code]["roots"][index]
     a, b, _ = brackets(code)[index]
-    x = Decimal(solved("bisection", code, a, b).x[-1])
-    printed = Decimal(root["published"])
-    agreement, tolerance = root["agreement"], root["tolerance"] or ""
-    rounding = abs(x) * Decimal(8 * 2.0**-52)
-    if match := re.search(r"tested to ([0-9.e+-]+)\)", agreement):
-        allowed = Decimal(match[1])
-    elif match := re.search(r"quantum ([0-9.e+-]+)", tolerance):
-        allowed = Decimal(match[1]) / (1 if "one unit" in agreement else 2) + rounding
-    else:
-        assert "double precision" in agreement or "30 decimals" in tolerance
-        allowed = rounding
-    assert abs(x - printed) <= allowed
+    assert_as_printed(solved("bisection", code, a, b).x[-1], code, index)
 
 
 DISAGREEING = [code for code, row in PUBLISHED.items() if not row["published_agrees"]]

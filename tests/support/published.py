@@ -3,11 +3,13 @@
 from __future__ import annotations
 
 import json
+import re
 from collections.abc import Mapping
+from decimal import Decimal
 from functools import cache
 from typing import Any
 
-from support.plain import Formula, residual_of
+from support.plain import MP, Formula, residual_of
 from support.runs import first_derivative, problem_of
 from support.tree import ROOT
 from surefoot.equation.problem import Problem
@@ -67,3 +69,41 @@ def brackets(code: str) -> tuple[tuple[float, float, float], ...]:
         if (f(a) > 0) != (f(b) > 0):
             found.append((a, b, root))
     return tuple(found)
+
+
+@cache
+def attainable(code: str, index: int) -> Decimal:
+    """How far from a root a solve in binary64 may end, relative: where the rounding errors of f hide its sign.
+
+    Four spacings of x, four times what a bracketing solve attained, and the bound of f's rounding error over its slope.
+    """
+    root = roots(code)[index]
+    value = residual(code).rounded()(root)
+    slope = MP.diff(residual(code).exact(), MP.mpf(root))
+    noise = float(value.error / abs(slope * root))
+    return Decimal(max(4 * 2.0**-52, 4 * PUBLISHED[code]["float64_root_rel_error"][index], 2 * noise))
+
+
+PRINTED = tuple(
+    (code, index)
+    for code, row in PUBLISHED.items()
+    for index, root in enumerate(row["roots"])
+    if row["published_agrees"] and root["published"]
+)
+"""Roots whose source prints a figure that holds."""
+
+
+def assert_as_printed(x: float, code: str, index: int) -> None:
+    """To half a unit of the last digit printed, to a whole one where the source is off by one; at best 8 spacings."""
+    root = PUBLISHED[code]["roots"][index]
+    printed = Decimal(root["published"])
+    agreement, tolerance = root["agreement"], root["tolerance"] or ""
+    rounding = abs(Decimal(x)) * Decimal(8 * 2.0**-52)
+    if match := re.search(r"tested to ([0-9.e+-]+)\)", agreement):
+        allowed = Decimal(match[1])
+    elif match := re.search(r"quantum ([0-9.e+-]+)", tolerance):
+        allowed = Decimal(match[1]) / (1 if "one unit" in agreement else 2) + rounding
+    else:
+        assert "double precision" in agreement or "30 decimals" in tolerance
+        allowed = rounding
+    assert abs(Decimal(x) - printed) <= allowed
