@@ -12,19 +12,8 @@ from hypothesis import strategies as st
 from support.problems import problems
 from surefoot.equation.problem import Correlation, Definition, Input, Job, Problem
 from surefoot.equation.tokens import is_name
-from surefoot.screens.form import (
-    FIELDS,
-    NOTHING,
-    Fault,
-    Form,
-    entries_of,
-    form_of,
-    input_line,
-    input_parts,
-    kept_words,
-    problem_of,
-    shown_text,
-)
+from surefoot.screens.form import FIELDS, NOTHING, Fault, Form, form_of, input_line, kept_words, problem_of
+from surefoot.screens.form_lines import entries_of, input_parts, shown_text
 
 PIPE = Problem(
     unknown="f",

@@ -5,8 +5,8 @@ from __future__ import annotations
 from pathlib import Path
 
 import pytest
-from support.screens import TAILRACE, program, screen_text, tailrace_session, wait_until
 
+from support.screens import TAILRACE, program, screen_text, tailrace_session, wait_until
 from surefoot.screens.commands import EVERYWHERE, FIELD, PLACES, ROOMS, keys_of
 from surefoot.screens.driver import AsciiDriver, wants_ascii
 from surefoot.screens.leaving import leaving_line

@@ -6,14 +6,13 @@ it came from, and whatever was not edited is given back exactly as it was.
 
 from __future__ import annotations
 
-import re
-import unicodedata
-from collections.abc import Iterable, Iterator, Sequence
+from collections.abc import Iterable, Sequence
 from dataclasses import dataclass, fields, replace
 from typing import TypeVar
 
 from surefoot.equation.problem import Definition, Input, Job, Problem
 from surefoot.equation.tokens import is_literal, is_name
+from surefoot.screens.form_lines import Entry, entries_of, input_parts, number_hint, one_line, shown_text
 
 _Part = TypeVar("_Part")
 
@@ -83,70 +82,6 @@ class Fault:
         return label_of(self.field) + line + (f", column {self.column}" if self.column else "")
 
 
-@dataclass(frozen=True, slots=True)
-class Entry:
-    """One entry of `where` or `inputs`.
-
-    Attributes:
-        raw: all of its text.
-        name: what stands before the `=`.
-        text: what stands behind it, without surrounding blanks.
-        line, column: place of the name.
-        text_line, text_column: place of the text; behind the `=` when there is none.
-        assigned: whether there is an `=`.
-    """
-
-    raw: str
-    name: str
-    text: str
-    line: int
-    column: int
-    text_line: int
-    text_column: int
-    assigned: bool
-
-    def place(self, line: int, column: int) -> tuple[int, int]:
-        """Place in the field of a place in `text`."""
-        return (self.text_line, self.text_column + column - 1) if line == 1 else (self.text_line + line - 1, column)
-
-
-def entries_of(text: str, *, continued: bool = True) -> Iterator[Entry]:
-    """The entries of `where` or, not `continued`, of `inputs`; blank lines are passed over.
-
-    Args:
-        continued: an indented line goes on with the entry above it.
-    """
-    block: list[str] = []
-    start = 1
-    for number, line in enumerate(text.split("\n"), 1):
-        if continued and block and (not line.strip() or line[0].isspace()):
-            block.append(line)
-        elif line.strip():
-            if block:
-                yield _entry(block, start)
-            block, start = [line], number
-    if block:
-        yield _entry(block, start)
-
-
-def _entry(block: list[str], line: int) -> Entry:
-    raw = "\n".join(block).rstrip()
-    before, equals, after = raw.partition("=")
-    text = after.strip()
-    blanks = after[: len(after) - len(after.lstrip())] if text else after
-    skipped = before + equals + blanks
-    return Entry(
-        raw=raw,
-        name=before.strip(),
-        text=text,
-        line=line,
-        column=len(before) - len(before.lstrip()) + 1,
-        text_line=line + skipped.count("\n"),
-        text_column=len(skipped) - (skipped.rfind("\n") + 1) + 1,
-        assigned=bool(equals),
-    )
-
-
 # -- from a problem to its form ---------------------------------------------------------------------------------------
 
 
@@ -164,25 +99,6 @@ def form_of(problem: Problem) -> Form:
         where="\n".join(shown_text(f"{each.name} = {each.text}", indent=INDENT) for each in problem.where),
         inputs="\n".join(input_line(each) for each in problem.inputs),
     )
-
-
-def shown_text(text: str, indent: str = "") -> str:
-    """Text as a field can hold it: one kind of line break, nothing that would steer the terminal.
-
-    Args:
-        indent: stands before every line after the first, so that it goes on with the entry.
-    """
-    lines = text.replace("\t", " ").splitlines()
-    return f"\n{indent}".join("".join(map(_visible, line)) for line in lines)
-
-
-def _visible(character: str) -> str:
-    return "\N{REPLACEMENT CHARACTER}" if unicodedata.category(character) in ("Cc", "Cf", "Cs") else character
-
-
-def one_line(text: str) -> str:
-    """Text as a field of one line can hold it."""
-    return shown_text(" ".join(text.split()))
 
 
 def input_line(each: Input) -> str:
@@ -270,18 +186,6 @@ def _fault_of_numbers(form: Form) -> Fault | None:
     return None
 
 
-def number_hint(text: str) -> str:
-    """What would be accepted for a text that is no number."""
-    if is_literal(text.replace(",", ".", 1)):
-        return f"write {text.replace(',', '.', 1)} with a point"
-    if re.fullmatch(r"[+-]?[0-9.]+[dD][+-]?[0-9]+(_\w+)?", text):
-        return f"write {re.split('[dD]', text)[0]}e{re.split('[dD_]', text)[1]}"
-    glued = re.match(r"[+-]?[0-9.]+(?:[eE][+-]?[0-9]+)?(?=[^0-9.\s])", text)
-    if glued and is_literal(glued[0]) and text[glued.end()] not in ",'_":
-        return f"write a space before a unit: {glued[0]} {text[glued.end() :]}"
-    return "a number such as 0.3, 1.5e-6 or 0x1.8p-3"
-
-
 def _unchanged(shown: Iterable[Entry], parts: Sequence[_Part]) -> dict[str, _Part]:
     """Text of an entry as it was shown -> the part of the problem that it showed."""
     entries = tuple(shown)
@@ -321,35 +225,6 @@ def _fault_of_name(entry: Entry, field: str, wanted: str) -> Fault | None:
         said = f"{entry.name} is not a name" if entry.name else "there is no name before the ="
         return Fault(field, said, entry.line, entry.column, hint=_NAME_HINT)
     return None
-
-
-_OPERATING_RANGE = re.compile(r"\[([^\[\],]*),([^\[\],]*)\]\Z")
-
-
-@dataclass(frozen=True, slots=True)
-class InputParts:
-    """The parts of an input's text, each with its offset in it: value, unit, ends of the operating range."""
-
-    value: tuple[str, int]
-    unit: tuple[str, int]
-    low: tuple[str, int] | None
-    high: tuple[str, int] | None
-
-
-def input_parts(text: str) -> InputParts:
-    """The parts of what stands behind `name =`; nothing is checked."""
-    ends = _OPERATING_RANGE.search(text)
-    low, high = (
-        (_part(text, ends.start(1), ends.end(1)), _part(text, ends.start(2), ends.end(2))) if ends else (None, None)
-    )
-    end = ends.start() if ends else len(text)
-    value_end = next((at for at in range(end) if text[at].isspace()), end)
-    return InputParts(_part(text, 0, value_end), _part(text, value_end, end), low, high)
-
-
-def _part(text: str, start: int, end: int) -> tuple[str, int]:
-    piece = text[start:end]
-    return piece.strip(), start + len(piece) - len(piece.lstrip())
 
 
 def _input(entry: Entry, base: Input | None) -> Input | Fault:

@@ -13,7 +13,8 @@ from surefoot.equation.tokens import is_name
 from surefoot.equation.tree import Equation, Expression, Name, Node
 from surefoot.equation.wording import children
 from surefoot.errors import EquationError, ProblemError
-from surefoot.screens.form import INDENT, NOTHING, Entry, Fault, Form, entries_of, input_parts, problem_of
+from surefoot.screens.form import INDENT, NOTHING, Fault, Form, problem_of
+from surefoot.screens.form_lines import Entry, entries_of, input_parts
 
 
 @dataclass(frozen=True, slots=True)

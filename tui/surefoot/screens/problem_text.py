@@ -8,7 +8,8 @@ from pathlib import Path
 
 from surefoot.equation.problem_file import problem_file_text, read_problem_file
 from surefoot.errors import ProblemError
-from surefoot.screens.form import Fault, Form, entries_of, label_of, problem_of
+from surefoot.screens.form import Fault, Form, label_of, problem_of
+from surefoot.screens.form_lines import entries_of
 from surefoot.screens.typed import Typed, typed_of
 
 MAX_BYTES = 4 * 1024 * 1024

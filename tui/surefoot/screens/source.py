@@ -3,10 +3,12 @@
 from __future__ import annotations
 
 import re
+from collections.abc import Mapping
 from dataclasses import replace
 
 from surefoot.equation.pasting import Pasted
-from surefoot.screens.form import Form, entries_of
+from surefoot.screens.form import Form, input_line
+from surefoot.screens.form_lines import entries_of
 
 # What source has and neither an equation nor definitions as one writes them have.
 _CERTAIN = re.compile(
@@ -20,6 +22,7 @@ _CERTAIN = re.compile(
     r"|//|/\*|[-+*/]=",
     re.MULTILINE | re.IGNORECASE,
 )
+_NAMES = {"fortran": "Fortran", "c": "C", "python": "Python"}
 _ASSIGNMENT = re.compile(r"^[ \t]*[^\W\d]\w*[ \t]*=[^=]", re.MULTILINE)
 
 
@@ -35,15 +38,45 @@ def looks_like_source(text: str) -> bool:
 
 
 def with_source(form: Form, pasted: Pasted) -> Form:
-    """The form with definitions and equation from source; a definition takes the place of one of the same name."""
-    fresh = {definition.name: f"{definition.name} = {definition.text}" for definition in pasted.definitions}
-    kept = [entry.raw for entry in entries_of(form.where) if entry.name not in fresh]
-    return replace(form, where="\n".join((*kept, *fresh.values())), equation=pasted.equation or form.equation)
+    """The form with what was read; a definition or input takes the place of one of the same name."""
+    definitions = {each.name: f"{each.name} = {each.text}" for each in pasted.definitions}
+    inputs = {each.name: input_line(each) for each in pasted.inputs}
+    return replace(
+        form,
+        unknown=form.unknown or pasted.unknown,
+        equation=pasted.equation or form.equation,
+        where=_with_entries(form.where, definitions, continued=True),
+        inputs=_with_entries(form.inputs, inputs, continued=False),
+    )
+
+
+def _with_entries(text: str, fresh: Mapping[str, str], *, continued: bool) -> str:
+    kept = [entry.raw for entry in entries_of(text, continued=continued) if entry.name not in fresh]
+    return "\n".join((*kept, *fresh.values()))
 
 
 def pasted_lines(pasted: Pasted) -> list[str]:
-    return []
+    """What was read and how, for the person to see before it is taken over."""
+    lines = [f"read as {_NAMES[pasted.language]}: {pasted.language_reason}", ""]
+    lines += [f"{each.name} = {each.text}" for each in pasted.definitions]
+    lines += [f"{input_line(each)}   (input)" for each in pasted.inputs]
+    lines.append(
+        f"equation: {pasted.equation}" if pasted.equation else "no equation in these lines; type it afterwards"
+    )
+    if pasted.unknown:
+        lines.append(f"unknown: {pasted.unknown}")
+    if pasted.names_needed:
+        lines.append(f"no value: {', '.join(pasted.names_needed)}")
+    lines += ["", "What changes a value, to be looked at:" if pasted.readings else "No reading changes a value."]
+    lines += reading_words(pasted)
+    if pasted.skipped:
+        lines += ["", "Not read:", *(f"line {each.line}: {each.text}: {each.why}" for each in pasted.skipped)]
+    return lines
 
 
 def reading_words(pasted: Pasted) -> tuple[str, ...]:
-    return ()
+    """The readings as sentences, as the record keeps them."""
+    return tuple(
+        f"line {each.line}, column {each.column}: {each.as_written} is read as {each.read_as}: {each.why}"
+        for each in pasted.readings
+    )

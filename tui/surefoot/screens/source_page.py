@@ -12,7 +12,7 @@ from textual.screen import ModalScreen
 
 from surefoot.equation.pasting import LANGUAGES, Pasted, read_source
 from surefoot.errors import EquationError
-from surefoot.screens.form import shown_text
+from surefoot.screens.form_lines import shown_text
 from surefoot.screens.source import pasted_lines
 from surefoot.screens.widgets.field import MAX_PASTE, ManyLines
 from surefoot.screens.widgets.lines import Lines

@@ -9,7 +9,7 @@ from textual.binding import Binding, BindingType
 from textual.message import Message
 from textual.widgets import Input, TextArea
 
-from surefoot.screens.form import shown_text
+from surefoot.screens.form_lines import shown_text
 
 MAX_PASTE = 50_000
 """Characters that a field takes in one paste; more is no equation, and would make every further key slow."""
