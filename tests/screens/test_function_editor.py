@@ -13,7 +13,7 @@ import pytest
 
 from support.command import Home
 from support.function_room import fill, function_room, settle
-from support.screens import TAILRACE, screen_text, tailrace_session, wait_until
+from support.screens import TAILRACE, message_of, screen_text, tailrace_session, wait_until
 from support.terminal import Terminal
 from surefoot.equation.problem_file import read_problem_file
 from surefoot.screens.app import SurefootApp
@@ -52,7 +52,7 @@ def test_a_whole_problem_is_given_as_its_problem_file() -> None:
 
 
 def test_the_plan_of_the_file_goes_along() -> None:
-    text = text_of(typed_of(TAILRACE), {"method": "secant", "start": [1.0, 2.0]})
+    text = text_of(typed_of(TAILRACE), {"method": "secant", "start": ["1.0", "2.0"]})
     assert 'method = "secant"' in text
 
 
@@ -125,7 +125,7 @@ async def test_an_error_of_the_text_is_told_with_its_place_and_the_text_is_kept(
         await fill(pilot, room, PIPE)
         await pilot.press("e")
         await wait_until(pilot, lambda: room.typed.editor_text != "")
-        said = screen_text(app).splitlines()[22]
+        said = message_of(app)
         assert "unknwon" in said
         assert room.view.form == PIPE
         assert "unknwon" in (Draft(tmp_path).load() or {})["editor_text"]
@@ -142,7 +142,7 @@ async def test_an_error_of_the_equation_is_shown_at_its_column_in_its_field(tmp_
         await pilot.press("e")
         await wait_until(pilot, lambda: room.view.form.equation == "f = a*(b")
         assert room.view.place == ("equation", 1, 9)
-        assert "equation, column 9" in screen_text(app).splitlines()[22]
+        assert "equation, column 9" in message_of(app)
 
 
 async def test_when_the_form_changed_since_it_is_asked_which_text_to_edit(tmp_path: Path, hand_over: Any) -> None:

@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from support.screens import NEWTON, program, screen_text, tailrace_session, wait_until
+from support.screens import NEWTON, message_of, program, tailrace_session, wait_until
 from surefoot.methods.plan import Control, Plan, Stop
 from surefoot.methods.table import METHODS
 from surefoot.screens.method import MethodRoom
@@ -120,4 +120,4 @@ async def test_what_is_wrong_with_a_plan_is_said_and_the_cursor_goes_there(tmp_p
         assert app.session is not None
         assert app.session.state.run is None
         assert (room.in_methods, room.form.rows()[room.at].key) == (False, "start 1")
-        assert "start" in screen_text(app).splitlines()[-2]
+        assert "start" in message_of(app)

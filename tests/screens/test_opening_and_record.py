@@ -6,7 +6,7 @@ from pathlib import Path
 
 import pytest
 
-from support.screens import TAILRACE, program, screen_text, tailrace_session, wait_until
+from support.screens import TAILRACE, message_of, program, screen_text, tailrace_session, wait_until
 from surefoot.screens.commands import EVERYWHERE, FIELD, PLACES, ROOMS, keys_of
 from surefoot.screens.driver import AsciiDriver, wants_ascii
 from surefoot.screens.leaving import leaving_line
@@ -30,7 +30,7 @@ async def test_an_empty_folder_says_what_to_do_first(tmp_path: Path) -> None:
         assert "o   opens the problem file" in text
         await pilot.press("enter")
         await pilot.pause()
-        assert "n begins a new one" in screen_text(app).splitlines()[-2]
+        assert "n begins a new one" in message_of(app)
 
 
 async def test_enter_resumes_the_session_under_the_cursor(tmp_path: Path) -> None:

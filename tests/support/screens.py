@@ -69,3 +69,8 @@ def tailrace_session(folder: Path, plan: Plan | None = NEWTON) -> Path:
 def program(folder: Path, **options: Any) -> SurefootApp:
     """The program on a folder of sessions, with a person at the keyboard."""
     return SurefootApp(folder=folder, by=BY, **options)
+
+
+def message_of(app: Any) -> str:
+    """What stands in the message lines of the room in front, between its last rule and the key line, as one line."""
+    return " ".join(line.strip() for line in screen_text(app).splitlines()[-3:-1]).strip()
