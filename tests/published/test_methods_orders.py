@@ -5,63 +5,21 @@ Errors are taken against a root in 260 digits, made by mpmath from the text of t
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from dataclasses import replace
-from functools import cache
 from itertools import pairwise
-from typing import Any
 
 import mpmath
 import pytest
 
+from support.orders import beside, decimal_residual, errors, every_smooth, local, precisely
 from support.plain import MP
-from support.published import PUBLISHED, problem, residual
-from support.runs import Walk, run
+from support.published import problem, residual
+from support.runs import run
 from surefoot.equation.choice import arithmetic_of
 from surefoot.equation.problem import Problem
 from surefoot.methods.measures import measures
 from surefoot.methods.plan import Control, Plan, Stop
 
 GOLDEN = (1 + 5**0.5) / 2
-SMOOTH = (
-    "hyd-colebrook-lib", "heat-lamp-cure", "orb-kepler-curtis", "che-rk-butane", "che-bubble", "mech-catenary-bj",
-    "hyd-chow-normal", "elec-diode", "vib-cantilever", "fin-ytm-fabozzi", "sf-omega", "gas-area-2",
-)  # fmt: skip
-every_smooth = pytest.mark.parametrize("code", SMOOTH)
-
-
-def precisely(method: str, code: str, *starts: str, steps: int, **settings: str) -> Walk:
-    plan = Plan(method, starts, steps, tuple(settings.items()), stop=Stop(), arithmetic="multiprecision:200")
-    return run(plan, problem(code), limit=steps)
-
-
-@cache
-def decimal_residual(code: str) -> Callable[[Any], Any]:
-    """f over literals and inputs as the decimals that they are, as multiprecision takes them."""
-    with MP.workdps(260):
-        inputs = {given.name: MP.mpf(given.value) for given in problem(code).inputs}
-        return replace(residual(code), inputs=inputs).decimal()
-
-
-@cache
-def local(code: str) -> tuple[Any, Any, Any]:
-    """The first root, and f' and f'' there."""
-    f = decimal_residual(code)
-    with MP.workdps(260):
-        root = MP.findroot(f, MP.mpf(PUBLISHED[code]["roots"][0]["value"]), tol=MP.mpf(10) ** -500, maxsteps=60)
-        return root, MP.diff(f, root), MP.diff(f, root, 2)
-
-
-def errors(walk: Walk, code: str, below: str) -> list[Any]:
-    """|x_k - root| where it is small enough for theory to speak, and large enough for 200 digits to show."""
-    root = local(code)[0]
-    found = [abs(MP.mpf(x) - root) for x in walk.x]
-    return [error for error in found if MP.mpf(10) ** -190 * abs(root) < error < MP.mpf(below) * abs(root)]
-
-
-def beside(code: str, factor: str) -> str:
-    """A start beside the root, in 30 digits."""
-    return str(mpmath.nstr(local(code)[0] * MP.mpf(factor), 30))
 
 
 @every_smooth

@@ -412,3 +412,15 @@ async def test_the_page_of_readings_shows_all_of_it(tmp_path: Path) -> None:
         await pilot.press("escape")
         await pilot.pause()
         assert app.screen is room
+
+
+async def test_the_cursor_waits_where_the_first_value_is_to_be_typed(tmp_path: Path) -> None:
+    async with function_room(tmp_path) as (_, pilot, room):
+        await fill(pilot, room, Form(unknown="y", equation="a*y = b"))
+        room.view.enter_field("where")
+        await pilot.press("tab")
+        await pilot.pause()
+        assert room.view.form.inputs == "a = \nb = "
+        assert room.view.place == ("inputs", 1, 5)
+        await pilot.press(*"2.5 m")
+        assert room.view.form.inputs == "a = 2.5 m\nb = "

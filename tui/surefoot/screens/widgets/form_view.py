@@ -9,6 +9,7 @@ from textual.message import Message
 from textual.widgets import Input, Static, TextArea
 
 from surefoot.screens.form import FIELDS, Fault, Form
+from surefoot.screens.form_lines import entries_of
 from surefoot.screens.widgets.field import ManyLines, OneLine
 
 _LABEL_ROWS = 3  # title, unknown with range, and the labels over the lists
@@ -97,6 +98,8 @@ class FormView(Container):
                 field.value = text
             else:
                 field.load_text(text)
+                if isinstance(field, ManyLines) and name == "inputs":
+                    _to_first_gap(field)
 
     def field(self, name: str) -> Input | TextArea:
         widget = self.query_one(f"#{name}")
@@ -200,6 +203,14 @@ class FormView(Container):
         """Lines that a field needs with what is too long wrapped."""
         field = self.field(name)
         return field.wrapped_document.height if isinstance(field, TextArea) else 1
+
+
+def _to_first_gap(field: ManyLines) -> None:
+    """Put the cursor where the first value is still to be typed."""
+    for entry in entries_of(field.text, continued=False):
+        if entry.assigned and not entry.text:
+            field.go_to(entry.text_line, len(field.document[entry.text_line - 1]) + 1)
+            return
 
 
 def _between(wanted: int, least: int, most: int) -> int:
