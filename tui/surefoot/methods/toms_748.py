@@ -24,8 +24,8 @@ A point taken in the place of c, by step control, counts as c: every formula hol
 point put by hand begins an iteration. One outside the bracket changes nothing.
 
 Needs: two starts with opposite signs of f, in either order. An end where f is exactly zero counts as a sign change.
-Costs: one value of f a step. An iteration takes k + 1 of them, at times k + 2, and has order 2.732 with k = 1 and 4.646
-with k = 2: 1.653 and 1.668 an evaluation.
+Costs: one value of f a step. An iteration takes k + 1 of them, at times k + 2, and has order 2.732 with k = 1 and at
+least 4.646 with k = 2: 1.653 and 1.668 an evaluation.
 Breaks down when: the starts show no sign change; the width overflows. An interpolation that overflows is a halving.
 Good at: few evaluations near a simple root, with both ends closing in. Bad at: multiple roots, where it mostly halves.
 Source: G. E. Alefeld, F. A. Potra, Y. Shi, Algorithm 748: enclosing zeros of continuous functions, ACM TOMS 21 (1995)
@@ -90,7 +90,7 @@ class Toms748:
         evaluations=(1, 0, 0),
         order=None,
         source="G. E. Alefeld, F. A. Potra, Y. Shi, ACM TOMS 21 (1995) 327-344",
-        cost_note="order 2.732 in 2 steps with k = 1, 4.646 in 3 with k = 2: 1.653 and 1.668 a step",
+        cost_note="order 2.732 in 2 steps with k = 1, at least 4.646 in 3 with k = 2",
     )
     settings = (
         Setting(
