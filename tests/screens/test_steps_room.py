@@ -174,3 +174,28 @@ async def test_a_fixed_point_run_is_drawn_as_its_path_between_g_and_the_diagonal
         assert "Step to 30: Z = g(0.98251701), dZ = -1.68e-08." in text
         assert "2.0 g" in text
         assert "30 steps taken and no test fired: |dx| = 1.6828717419592465e-08 > 1e-08" in text
+
+
+async def test_a_question_leaves_the_log_in_sight(tmp_path: Path) -> None:
+    app = program(tmp_path, target=tailrace_session(tmp_path))
+    async with app.run_test(size=SIZE) as pilot:
+        await wait_until(pilot, lambda: app.session is not None)
+        await pilot.press("space", "n")
+        await pilot.pause()
+        text = screen_text(app)
+        assert "Note for the record:" in text
+        assert row(text, 1).startswith("   1  '6.1")
+
+
+async def test_withdrawing_the_run_says_how_to_begin_another_and_numbers_go_on(tmp_path: Path) -> None:
+    app = program(tmp_path, target=tailrace_session(tmp_path))
+    async with app.run_test(size=SIZE) as pilot:
+        await wait_until(pilot, lambda: app.session is not None)
+        await pilot.press("backspace")
+        await pilot.pause()
+        assert app.session is not None
+        assert app.session.state.run is None
+        assert "No run yet: 2 goes to the method; give it its starts, and b begins the run." in screen_text(app)
+        await pilot.press("2", "up", "b")
+        await wait_until(pilot, lambda: app.session is not None and app.session.state.run is not None)
+        assert "run 2 of 2" in screen_text(app)

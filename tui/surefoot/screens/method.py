@@ -14,6 +14,7 @@ from textual.containers import Horizontal, Vertical
 from surefoot.errors import PlanError
 from surefoot.figures.numbers import significant
 from surefoot.methods.contract import Traits
+from surefoot.methods.plan import Plan
 from surefoot.methods.table import METHODS
 from surefoot.screens.commands import bindings_of
 from surefoot.screens.dialogs import Ask, Choose
@@ -23,6 +24,7 @@ from surefoot.screens.plan_form import PlanForm, form_of_plan, form_of_table
 from surefoot.screens.room import Room
 from surefoot.screens.widgets.lines import Lines
 from surefoot.session.commands import BeginRun, BeginVariant
+from surefoot.session.events import RunBegun
 
 _LIST_ROWS = 7
 _PLAN_CELLS = 46
@@ -71,7 +73,7 @@ class MethodRoom(Room):
         self.redraw()
 
     def _take_plan(self) -> None:
-        """Begin from the plan of the run in hand, else from that of the problem file, else from defaults."""
+        """Begin from the plan of the run in hand, of the problem file, of the run begun last, else from defaults."""
         state = self.state
         if state is not None and state.run is not None:
             self.form = form_of_plan(state.run.plan)
@@ -81,8 +83,15 @@ class MethodRoom(Room):
             except PlanError as error:
                 self.say(str(error), "alert")
         else:
-            self.form = PlanForm("newton-raphson", {"stop.x_relative": "1e-10"})
+            last = self._plan_begun_last()
+            self.form = form_of_plan(last) if last else PlanForm("newton-raphson", {"stop.x_relative": "1e-10"})
         self.at = list(METHODS).index(self.form.method)
+
+    def _plan_begun_last(self) -> Plan | None:
+        """The plan of the run that was begun last, though it was withdrawn."""
+        session = self.surefoot.session
+        events = reversed(session.events()) if session is not None else ()
+        return next((event.what.plan for event in events if isinstance(event.what, RunBegun)), None)
 
     # -- drawing ----------------------------------------------------------------------------------------------------
 

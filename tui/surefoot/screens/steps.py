@@ -75,7 +75,8 @@ class StepsRoom(Room):
         log, picture = self.query_one("#log", Lines), self.query_one("#step-picture", Lines)
         run = self.run
         if run is None:
-            log.show([Text(" No run yet. 2 goes to the method: choose one, give its starts, and b begins the run.")])
+            log.styles.width = self.size.width
+            log.show([Text(" No run yet: 2 goes to the method; give it its starts, and b begins the run.")])
             picture.show([])
             return
         wide = self.size.width >= _NARROW_SCREEN

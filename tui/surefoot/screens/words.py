@@ -41,10 +41,10 @@ def clock(at: str, *, date: bool = False) -> str:
 
 
 def run_words(state: SessionState) -> str:
-    """`run 2 of 3`, empty before there is a run."""
+    """`run 2 of 3`, empty before there is a run. Runs that were withdrawn keep their numbers."""
     if state.run is None:
         return ""
-    return f"run {state.run.number} of {len(state.runs)}"
+    return f"run {state.run.number} of {max(run.number for run in state.runs)}"
 
 
 def ending_words(run: Run) -> str:
