@@ -6,7 +6,6 @@ from pathlib import Path
 
 from support.function_room import function_room
 from support.screens import screen_text, wait_until
-
 from surefoot.equation.pasting import read_source
 from surefoot.screens.form import Form
 from surefoot.screens.source import looks_like_source, pasted_lines, reading_words, with_source

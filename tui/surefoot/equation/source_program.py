@@ -48,6 +48,7 @@ class Program:
         unknown: the first parameter of the function that was read.
         given: the expression that was returned, or stands alone; None when there is none.
         result: key of the name that the function gives its result by.
+        outputs: keys of the other parameters; a subroutine gives its result by one of them.
     """
 
     def __init__(self, language: Language) -> None:
@@ -59,6 +60,7 @@ class Program:
         self.unknown = ""
         self.given: Expression | None = None
         self.result = ""
+        self.outputs: set[str] = set()
         self._returned = False
 
     def read(self, steps: Iterable[Step]) -> None:
@@ -93,7 +95,7 @@ class Program:
             elif place == 0:
                 self.unknown = self.names.look_up(token, token.text).name
             else:
-                self.names.look_up(token, token.text)
+                self.outputs.add(key)
 
     def _hide(self, key: str) -> None:
         """A parameter hides what has its name outside the function."""

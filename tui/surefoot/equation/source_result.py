@@ -56,11 +56,13 @@ def _residual(program: Program) -> _Residual:
     """The residual or equation: what is returned, what stands alone, or the last assignment where it is one."""
     entries, given = program.entries, program.given
     last = entries[-1] if entries and _literal(entries[-1].node) is None else None
-    if given is None and program.result:
-        result = next((entry for entry in reversed(entries) if entry.key == program.result), None)
+    if given is None:
+        gives = {program.result} if program.result else program.outputs
+        result = next((entry for entry in reversed(entries) if entry.key in gives), None)
         given = Name(result.name) if result else None
-    if given is not None and last is not None and given == Name(last.name):
-        return _Residual(to_text(last.node), names_in(last.node), "", entries[:-1])
+    own = next((entry for entry in entries if given == Name(entry.name)), None)
+    if own is not None and not any(own.name in names_in(entry.node) for entry in entries):
+        return _Residual(to_text(own.node), names_in(own.node), "", [entry for entry in entries if entry is not own])
     if given is not None:
         return _Residual(to_text(given), names_in(given), "", entries)
     if last is None or not names_in(last.node):
