@@ -179,7 +179,7 @@ class Stepper:
         return state, None
 
     def _without_iterate(self, progress: Progress, functions: Watched, result: Failure | Stopped) -> Stepped:
-        """The rule, or the test before the step, asked for a value that there is not; or the user stopped it."""
+        """The rule asked for a value that there is not; or the user stopped the rule or a test."""
         if isinstance(result, Stopped):
             return Stepped(None, progress.state, Spent(), None)
         ending = self._endings.no_value(functions.what, functions.x, result)
@@ -209,12 +209,7 @@ class Stepper:
     def _ending_after(self, stride: Stride, state: State, steps: int, functions: Functions) -> Ending | None:
         ending = self._exact(stride.new)
         if ending is None and not self._plan.stop.before_step:
-            try:
-                ending = self._tested(stride, state, steps, functions)
-            except EvaluationFailed as failed:
-                if isinstance(failed.result, Stopped):
-                    raise
-                ending = self._endings.no_value("the stopping test", stride.new.x, failed.result)
+            ending = self._tested(stride, state, steps, functions)
         if ending is not None or steps < self._plan.max_steps:
             return ending
         if self._plan.stop.cap_is_success:
@@ -222,10 +217,18 @@ class Stepper:
         return self._endings.step_limit(steps, sides(self._arithmetic, self._tolerances, stride))
 
     def _tested(self, stride: Stride, state: State, steps: int, functions: Functions) -> Ending | None:
-        """Converged by a test of the plan, or without progress: no test fired and the iterate repeats."""
+        """Converged by a test of the plan, or without progress: no test fired and the iterate repeats.
+
+        A test of one's own that has no value ends the run too.
+        """
         if steps < self._plan.stop.min_steps:
             return None
-        fired = self._verdict(stride, state, steps, functions)
+        try:
+            fired = self._verdict(stride, state, steps, functions)
+        except EvaluationFailed as failed:
+            if isinstance(failed.result, Stopped):
+                raise
+            return self._endings.no_value("the stopping test", stride.new.x, failed.result)
         if fired is not None:
             return self._endings.converged(fired, steps)
         repeats = stride.old is not None and same_bits(self._arithmetic, stride.new.x, stride.old.x)
