@@ -145,6 +145,7 @@ def test_the_ends_of_the_numbers() -> None:
     (crossing,) = found("piecewise(x > 3: 1; otherwise: -1)", -1.7e308, 1.7e308)
     assert crossing.a.x <= 3 <= crossing.b.x
     assert len(found("piecewise(x > 3: 1; otherwise: -1)", 5e-324, 1.7e308)) == 1
+    assert len(found("piecewise(x > 3: 1; otherwise: -1)", -1.7e308, 1.7e308, budget=9)) == 1
 
 
 @pytest.mark.parametrize("budget", [0, 1, 5, 9])

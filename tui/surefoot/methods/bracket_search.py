@@ -20,7 +20,7 @@ from surefoot.equation.meter import Meter
 from surefoot.equation.results import Failure, FailureKind, Purpose, Real, Result, Stopped
 from surefoot.methods.contract import Point
 from surefoot.methods.guarded import Guarded, guarded
-from surefoot.methods.rounding import offset_midpoint, sign
+from surefoot.methods.rounding import sign
 
 BUDGET = 2000
 """Evaluations of f that a search makes at most, unless it is told otherwise."""
@@ -143,7 +143,8 @@ def _kind(meter: Meter, a: Point, b: Point, halvings: int) -> Kind | None:
     first = a, b
     done = 0
     for _ in range(halvings):
-        x = offset_midpoint(arithmetic, a.x, b.x)
+        left, right = guarded(arithmetic, (a.x, b.x))
+        x = (left / 2 + right / 2).value  # the sum of the ends, and their difference, can overflow
         if not a.x < x < b.x:
             break
         f: Result = meter.evaluate(x, Purpose.PROBE)
