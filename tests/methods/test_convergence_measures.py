@@ -171,6 +171,13 @@ def test_measures_in_other_arithmetics() -> None:
         assert last_one.dx == numbers.subtract(walk.x[-1], walk.x[-2])
 
 
+def test_the_longest_steps_of_binary32() -> None:
+    numbers = arithmetic_of("binary32")
+    xs = [numbers.literal(text, False) for text in ("0", "3e38", "1e38", "1.5e38")]
+    start, *rest = [Iterate(k, x, x, x if k else None, ACCOUNT if k else None) for k, x in enumerate(xs)]
+    assert measure_last([start, *rest], numbers).order is None
+
+
 @given(st.lists(st.floats(allow_nan=False, allow_infinity=False), min_size=1, max_size=6))
 def test_any_iterates_have_measures(xs: list[float]) -> None:
     for measure in measures(rule_iterates(*xs), BINARY64):

@@ -183,6 +183,15 @@ def test_every_kind_of_field() -> None:
     assert bits(decode_state(_EveryKindMethod(), content, BINARY64)) == bits(state)  # type: ignore[arg-type]
 
 
+@pytest.mark.parametrize(
+    "changed", [{"flag": "maybe"}, {"text": 3}, {"whole": "7"}, {"pair": ["0.5"]}, {"many": [["1.0"]]}]
+)
+def test_a_field_of_the_wrong_kind_is_refused(changed: dict[str, object]) -> None:
+    content = encode_state(EveryKind(0.1, 7, False, "", None, (1.0, 2), ()), BINARY64)
+    with pytest.raises(RecordError, match="not a state of secant"):
+        decode_state(_EveryKindMethod(), {**content, **changed}, BINARY64)  # type: ignore[arg-type]
+
+
 @dataclass(frozen=True, slots=True)
 class _Foreign:
     mapping: dict[str, float]

@@ -8,10 +8,13 @@ from typing import Any
 import pytest
 
 from surefoot.equation.checking import CheckedProblem, check_problem
+from surefoot.equation.choice import arithmetic_of
 from surefoot.equation.problem import Definition, Input, Problem
 from surefoot.errors import PlanError
+from surefoot.methods.contract import Setting
 from surefoot.methods.plan import Control, Plan, Stop
 from surefoot.methods.plan_check import check_plan
+from surefoot.methods.settings import read_number, read_settings
 from surefoot.methods.table import PLANNED, method_of
 
 PROBLEM = Problem(
@@ -145,3 +148,30 @@ def test_codes_of_the_problem_file_are_known_or_planned() -> None:
     for code in PLANNED:
         with pytest.raises(PlanError, match="is not in this version"):
             method_of(code)
+
+
+class _Flagged:
+    """A method with a flag among its settings; no method of this version has one."""
+
+    traits = method_of("secant").traits
+    settings = (Setting("clever", "flag", "true", "whether to be clever"),)
+
+
+@pytest.mark.parametrize(
+    ("given", "read"), [((), True), ((("clever", "false"),), False), ((("clever", "true"),), True)]
+)
+def test_a_flag(given: tuple[tuple[str, str], ...], read: bool) -> None:
+    settings = read_settings(_Flagged(), replace(SECANT, settings=given), arithmetic_of("binary64"))  # type: ignore[arg-type]
+    assert settings["clever"] is read
+
+
+def test_a_flag_that_is_neither() -> None:
+    plan = replace(SECANT, settings=(("clever", "1"),))
+    with pytest.raises(PlanError, match=r"plan\.settings\.clever: '1' is neither true nor false"):
+        read_settings(_Flagged(), plan, arithmetic_of("binary64"))  # type: ignore[arg-type]
+
+
+def test_a_number_of_the_record_that_is_not_finite() -> None:
+    for kind, text in (("binary64", "-inf"), ("binary64", "nan"), ("binary32", "f32:inf"), ("binary32", "f32:nan")):
+        with pytest.raises(PlanError, match=r"plan\.start: .* is not"):
+            read_number(text, arithmetic_of(kind), "plan.start")

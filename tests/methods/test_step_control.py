@@ -84,6 +84,10 @@ def test_edge_fraction_goes_part_of_the_way_to_the_bound_ahead() -> None:
     assert take(control, 4.0, 6.5) == (6.5, ())
 
 
+def test_edge_fraction_without_bounds_is_off() -> None:
+    assert take(Control(edge_fraction="0.75"), 4.0, 9.0) == (9.0, ())
+
+
 def test_edge_fraction_stays_silent_beyond_the_bound() -> None:
     control = Control(edge_fraction="0.75", bounds=("0", "8"), order=("edge_fraction", "bounds"))
     assert take(control, 9.0, 10.0) == (8.0, (Limited("bounds", 10.0, 8.0),))

@@ -47,6 +47,7 @@ def test_converged_by_a_test_of_the_plan() -> None:
     assert walked.ending.verdict == Verdict("x_absolute", (("x_absolute", 0.25, 0.25),))
     assert walked.ending.says == "x_absolute holds after 5 steps: |dx| = 0.25 <= 0.25"
     assert walked.spent == Spent(6, 0, 5)
+    assert walked.spent.total == 11
 
 
 def test_converged_by_an_exact_zero() -> None:
@@ -353,13 +354,14 @@ def test_a_stopped_evaluation_leaves_nothing_behind(questions: int, iterates: in
         assert (stopped.iterate, stopped.ending, stopped.state) == (None, None, walked.states[-1])
 
 
-@pytest.mark.parametrize("questions", [1, 2])
-def test_stopped_within_a_rule(questions: int) -> None:
-    """After the start: the derivative, or f at the iterate proposed."""
+@pytest.mark.parametrize("questions", [1, 2, 3])
+def test_stopped_within_a_step(questions: int) -> None:
+    """After the start: the derivative, f at the iterate proposed, or the derivative that the test asks for."""
     from surefoot.equation.derivatives import derive
 
     checked = simple("x^2 - 2")
-    stepper = Stepper(newton(), checked, (derive(checked, 1),), _StopAfter(questions))
+    plan = newton(stop=Stop(test="abs(d_k) < 1"))
+    stepper = Stepper(plan, checked, (derive(checked, 1),), _StopAfter(questions))
     begun = stepper.begin()
     progress = Walk(begun, (), begun.iterates, (begun.state,), begun.spent, None).progress
     stopped = stepper.advance(progress)

@@ -86,6 +86,13 @@ def test_the_residual_is_a_test_of_its_own_beside_a_sum() -> None:
     assert fired(Stop(residual="1", combine="sum"), stride(2.0, 1.0)) == Verdict("residual", (("residual", 1.0, 1.0),))
 
 
+def test_what_cannot_be_compared_does_not_hold() -> None:
+    failed = Stride(Iterate(4, 1.0, Failure(FailureKind.DOMAIN, "ln(x)"), raw=1.0), Iterate(3, 1.0, 2.0), ORIGIN)
+    assert fired(Stop(residual="1e300"), failed) is None
+    assert fired(Stop(x_absolute="1", residual="1", combine="all"), failed) is None
+    assert fired(Stop(x_absolute="9", x_relative="9", combine="sum"), stride(2.0, None)) is None
+
+
 def test_no_test_never_fires() -> None:
     for combine in ("any", "all", "sum"):
         assert fired(Stop(combine=combine), stride(1.0, 1.0, f=1e-300)) is None

@@ -68,7 +68,12 @@ def read_limits(control: Control, arithmetic: Arithmetic) -> Limits:
     if control.bounds is not None:
         low, high = (read_number(text, arithmetic, "plan.control.bounds") for text in control.bounds)
         bounds = low, high
-    active = tuple(stage for stage in control.order if stage in numbers or (stage == "bounds" and bounds is not None))
+    bounded = ("edge_fraction", "bounds")
+    active = tuple(
+        stage
+        for stage in control.order
+        if (stage in numbers or stage == "bounds") and (stage not in bounded or bounds is not None)
+    )
     return Limits(active, MappingProxyType(numbers), bounds, control.at_bound)
 
 
@@ -126,9 +131,7 @@ def factor_limit(here: Here, move: Move) -> Move:
 
 def edge_fraction(here: Here, move: Move) -> Move:
     """At most this fraction of the way from x_k to the bound ahead; nothing where x_k is beyond that bound."""
-    if here.limits.bounds is None:
-        return move
-    low, high = here.limits.bounds
+    low, high = _bounds(here)
     bound, ahead = (high, here.x < high) if move.step > 0 else (low, here.x > low)
     if not ahead:
         return move
@@ -141,12 +144,15 @@ def edge_fraction(here: Here, move: Move) -> Move:
 
 def bounds(here: Here, move: Move) -> Move:
     """Beyond a bound: clip to it, reject the step, halve it until it ends inside, or reflect it."""
-    if here.limits.bounds is None:
-        return move
-    low, high = here.limits.bounds
+    low, high = _bounds(here)
     if low <= move.x <= high:
         return move
     return _AT_BOUND[here.limits.at_bound](here, move, low, high)
+
+
+def _bounds(here: Here) -> tuple[Real, Real]:
+    assert here.limits.bounds is not None, "without bounds the stages that look at them are off"
+    return here.limits.bounds
 
 
 def _by(here: Here, step: Real) -> Move:

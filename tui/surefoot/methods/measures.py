@@ -110,11 +110,11 @@ def _order(arithmetic: Arithmetic, tail: Sequence[Iterate], steps: Sequence[Real
     first, second, third = (None if step is None else abs(step) for step in steps)
     if first is None or second is None or third is None:
         return None
-    floor = arithmetic.multiply(arithmetic.integer(_SPACINGS), arithmetic.spacing(tail[-1].x))
-    if not (floor < third < second and second + second < first):
-        return None
     ln = arithmetic.functions["ln"]
     try:
+        floor = arithmetic.multiply(arithmetic.integer(_SPACINGS), arithmetic.spacing(tail[-1].x))
+        if not (floor < third < second < arithmetic.divide(first, arithmetic.integer(2))):
+            return None
         shrunk = ln(arithmetic.divide(third, second))
         return arithmetic.approximate(arithmetic.divide(shrunk, ln(arithmetic.divide(second, first))))
     except OperationFailed:

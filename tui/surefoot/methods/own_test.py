@@ -17,7 +17,6 @@ from surefoot.equation.arithmetic import OperationFailed
 from surefoot.equation.checking import CheckedProblem, parse_known
 from surefoot.equation.compiling import compile_expression
 from surefoot.equation.function import Function
-from surefoot.equation.functions import CONSTANTS
 from surefoot.equation.parser import parse_condition
 from surefoot.equation.results import EvaluationFailed, Failure, Real, Stopped
 from surefoot.equation.tree import Comparison, Condition, Junction, Not
@@ -104,8 +103,6 @@ class OwnTest:
         slots = {name: slot for slot, name in enumerate(known)}
         numbers = list(known.values())
         for comparison in _comparisons(self._tree):
-            if not names_in(comparison) - CONSTANTS.keys() <= known.keys():
-                continue
             try:
                 operands = [compile_expression(operand, arithmetic, slots)(numbers) for operand in comparison.operands]
             except EvaluationFailed:

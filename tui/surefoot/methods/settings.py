@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import math
 from collections.abc import Mapping
 from types import MappingProxyType
 from typing import Any
@@ -28,7 +29,7 @@ def read_number(text: str, arithmetic: Arithmetic, key: str) -> Real:
         number = arithmetic.literal(text, False) if is_literal(text) else arithmetic.decode(text)
     except (ValueError, OperationFailed) as error:
         raise PlanError(f"{text!r} is not a number of {arithmetic.kind}", key=key) from error
-    if number - number != 0:
+    if number != number or abs(number) == math.inf:
         raise PlanError(f"{text!r} is not finite", key=key)
     return number
 

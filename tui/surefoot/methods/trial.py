@@ -87,9 +87,7 @@ def _stepped(prepared: Prepared, starts: tuple[Point, ...], meter: Meter) -> Lan
     """The landing of the rule itself. Raises EvaluationFailed when the rule asks for a value that there is not."""
     method, functions = prepared.method, meter.calls(Purpose.PROBE)
     state = method.begin(starts, prepared.settings, functions)
-    if isinstance(state, Breakdown):
-        return Landing(method.traits.code, why=state.reason)
-    proposal = method.propose(state, prepared.settings, functions)
+    proposal = state if isinstance(state, Breakdown) else method.propose(state, prepared.settings, functions)
     if isinstance(proposal, Breakdown):
         return Landing(method.traits.code, why=proposal.reason)
     f = meter.evaluate(proposal.x, Purpose.PROBE)
