@@ -25,7 +25,7 @@ class StepShape:
         shape: tangent, chord, bracket, cobweb or parabola.
         points: the points it rests on (x, f), in the order of the method's definition.
         landing: where the line meets zero: what the rule itself proposed, before any step control; None if unknown.
-        slope: of a tangent, where there is no landing.
+        slope: of the line through the first point; a rule may have followed another one than that of its points.
     """
 
     shape: Shape
@@ -46,15 +46,15 @@ def base_marks(step: StepShape) -> list[Mark]:
 
 
 def step_segments(step: StepShape) -> tuple[Segment, ...]:
-    """The straight lines, or pieces of the parabola, of a step."""
+    """The straight lines, or pieces of the curve, of a step."""
     points = [(place(x), place(y)) for x, y in step.points]
     points = [point for point in points if all(map(math.isfinite, point))]
     if not points or step.shape in ("bracket", "cobweb"):
         return ()
     if step.shape == "parabola" and len(points) > 2:
-        return _parabola(points[:3], step.landing)
-    ends = points[:2] if step.shape == "chord" else points[:1]
+        return _curve(points, step.landing)
     slope = place(step.slope)
+    ends = _chord(points[:2], slope) if step.shape == "chord" else points[:1]
     if step.landing is not None:
         ends.append((place(step.landing), 0.0))
     elif len(ends) == 1 and math.isfinite(slope) and slope != 0:
@@ -62,15 +62,26 @@ def step_segments(step: StepShape) -> tuple[Segment, ...]:
     return tuple(Segment(*a, *b) for a, b in pairwise(sorted(ends)))
 
 
-def _parabola(points: Sequence[tuple[float, float]], landing: float | None) -> tuple[Segment, ...]:
-    """The parabola through three points: f over x, or x over f where only that one meets zero at the landing."""
-    (a, fa), (b, fb), (c, fc) = points
-    if len({a, b, c}) == 3 and (landing is None or _is_root(points, landing)):
-        ends = [a, b, c] + ([] if landing is None else [landing])
-        path = [(x, _through(points, x)) for x in _spread(ends)]
-    elif len({fa, fb, fc}) == 3:
-        turned = [(fa, a), (fb, b), (fc, c)]
-        path = [(_through(turned, f), f) for f in _spread([fa, fb, fc, 0.0])]
+def _chord(points: list[tuple[float, float]], slope: float) -> list[tuple[float, float]]:
+    """The ends of a chord; where its slope is known, the second end is on the line of that slope."""
+    if len(points) < 2 or not math.isfinite(slope):
+        return points
+    (x0, f0), (x1, _) = points
+    height = f0 + slope * (x1 - x0)
+    return [points[0], (x1, height)] if math.isfinite(height) else points
+
+
+def _curve(points: Sequence[tuple[float, float]], landing: float | None) -> tuple[Segment, ...]:
+    """The parabola through three points: f over x, or x over f where only that one meets zero at the landing.
+
+    Through more points it is x over f: only inverse interpolation takes more than three.
+    """
+    xs, fs = [x for x, _ in points], [f for _, f in points]
+    if len(points) == 3 and len(set(xs)) == 3 and (landing is None or _is_root(points, landing)):
+        path = [(x, _through(points, x)) for x in _spread(xs + ([] if landing is None else [landing]))]
+    elif len(set(fs)) == len(points):
+        turned = [(f, x) for x, f in points]
+        path = [(_through(turned, f), f) for f in _spread([*fs, 0.0])]
     else:
         return ()
     return tuple(Segment(*start, *end) for start, end in pairwise(path))
@@ -81,13 +92,15 @@ def _is_root(points: Sequence[tuple[float, float]], landing: float) -> bool:
 
 
 def _through(points: Sequence[tuple[float, float]], at: float) -> float:
-    """The parabola through three points with different abscissae (Lagrange's form)."""
-    (a, fa), (b, fb), (c, fc) = points
-    return (
-        fa * ((at - b) / (a - b)) * ((at - c) / (a - c))
-        + fb * ((at - a) / (b - a)) * ((at - c) / (b - c))
-        + fc * ((at - a) / (c - a)) * ((at - b) / (c - b))
-    )
+    """The polynomial through points with different abscissae (Lagrange's form)."""
+    total = 0.0
+    for a, fa in points:
+        term = fa
+        for b, _ in points:
+            if b != a:
+                term *= (at - b) / (a - b)
+        total += term
+    return total
 
 
 def _spread(ends: Sequence[float]) -> list[float]:

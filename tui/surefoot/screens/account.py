@@ -10,6 +10,7 @@ from surefoot.methods.stopping import LEFT_SIDES
 from surefoot.screens.words import OUTCOME_WORDS
 from surefoot.session.state import Run
 
+_MIDDLE = 1e-9  # part of its bracket by which a middle may be off for rounding
 _STAGES = {
     "damping": "damped",
     "step_limit": "held by step_limit",
@@ -28,7 +29,7 @@ def account_words(run: Run, iterate: Iterate, previous: Iterate | None, order: f
         return f"Put by hand: {words.x(iterate.x)}. Reason: {iterate.put}"
     if iterate.account is None:
         return f"Start {iterate.k}: {words.x(iterate.x)}, {words.residual(iterate)}."
-    parts = [f"Step to {iterate.k}: {words.basis(iterate.account)}"]
+    parts = [f"Step to {iterate.k}: {words.basis(iterate.account, iterate.raw)}"]
     if previous is not None:
         parts.append(f"d{words.name} = {words.amount(iterate.x - previous.x)}")
     text = ", ".join(parts) + "."
@@ -81,7 +82,7 @@ class _Words:
             return f"no residual: {iterate.f}"
         return f"residual {short(self._arithmetic.encode(iterate.f))}"
 
-    def basis(self, account: Account) -> str:
+    def basis(self, account: Account, raw: float | None) -> str:
         at = [self.number(point.x, 8) for point in account.points]
         figures = {name: self.number(value, 3) for name, value in account.figures}
         if account.shape == "tangent":
@@ -92,13 +93,24 @@ class _Words:
         if account.shape == "chord":
             slope = self.number(account.slope, 4) if account.slope is not None else "?"
             step = f", difference step {figures['h']}" if "h" in figures else ""
-            return f"chord through {self.name} = {' and '.join(at)}, slope {slope}{step}"
+            kept = f", f at the kept end taken as {figures['kept_f']}" if "kept_f" in figures else ""
+            double = " of double length" if "secant_length" in figures else ""
+            return f"chord{double} through {self.name} = {' and '.join(at)}, slope {slope}{step}{kept}"
         if account.shape == "bracket":
-            width = f", width {figures['width']}" if "width" in figures else ""
-            return f"middle of {' .. '.join(at)}{width}"
+            width = f", width {figures.pop('width')}" if "width" in figures else ""
+            ends = " .. ".join(at[:2])
+            if raw is not None and self._is_middle(account, raw):
+                return f"middle of {ends}{width}"
+            others = "".join(f", {name.replace('_', ' ')} {value}" for name, value in figures.items())
+            return f"bracket {ends}{width}{others}"
         if account.shape == "cobweb":
             return f"{self.name} = g({at[0]})"
-        return f"parabola through {', '.join(at)}"
+        return f"{'parabola' if len(at) < 4 else 'inverse cubic'} through {', '.join(at)}"
+
+    def _is_middle(self, account: Account, raw: float) -> bool:
+        """Whether a step lands in the middle of its bracket, but for rounding."""
+        a, b, x = (self._arithmetic.approximate(each) for each in (account.points[0].x, account.points[1].x, raw))
+        return abs(x - (a / 2 + b / 2)) <= _MIDDLE * abs(b - a)
 
     def limit(self, limited: Limited) -> str:
         how = _STAGES.get(limited.stage, limited.stage)
