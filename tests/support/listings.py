@@ -1,11 +1,14 @@
 """Source listings of an invented plant, in three languages: friction, sections, equations of state, heat, money.
 
-`LISTINGS` holds the texts; what they say is in the tests.
+`LISTINGS` holds the texts; what they say is in the tests, as `Expected`.
 """
 
 from __future__ import annotations
 
 from collections.abc import Mapping
+from dataclasses import dataclass, field
+
+from surefoot.equation.pasting import Pasted
 
 FORTRAN: Mapping[str, str] = {
     "penstock friction, fixed form": """\
@@ -191,6 +194,13 @@ double area = M_PI*d*d/4;
 double w = 2*PI*n/60;
 double k = hypot(a, b) + cbrt(c) + tgamma(d) + j0(x) + jn(2, x);
 """,
+    "a method in a namespace": """\
+namespace plant {
+double Pipe::residual(double v) const {
+    return v*d/nu - 2300;
+}
+}
+""",
     "comments inside": """\
 double a = b /* breadth */ + c // and the rest
          + d;
@@ -262,8 +272,9 @@ d = np.degrees(np.arctan2(y, x))
 """,
     "members": """\
 class Pipe:
-    pass
-re = self.v*self.pipe.d/self.nu
+    def reynolds(self, v):
+        re = v*self.pipe.d/self.nu
+        return re - 2300, self.pipe.d/self.nu
 """,
     "two-argument logarithm and friends": """\
 a = math.log(x, 10)
@@ -298,3 +309,26 @@ def npv(i, price=700.89):
 }
 
 LISTINGS: Mapping[str, Mapping[str, str]] = {"fortran": FORTRAN, "c": C, "python": PYTHON}
+
+
+@dataclass(frozen=True)
+class Expected:
+    """What a listing says; `needed` holds names with blanks between, `skipped` the lines that are not read, and why."""
+
+    definitions: Mapping[str, str] = field(default_factory=dict)
+    inputs: Mapping[str, str] = field(default_factory=dict)
+    equation: str = ""
+    unknown: str = ""
+    needed: str = ""
+    skipped: Mapping[int, str] = field(default_factory=dict)
+
+    @classmethod
+    def of(cls, pasted: Pasted) -> Expected:
+        return cls(
+            {line.name: line.text for line in pasted.definitions},
+            {given.name: given.value for given in pasted.inputs},
+            pasted.equation,
+            pasted.unknown,
+            " ".join(pasted.names_needed),
+            {skipped.line: skipped.why for skipped in pasted.skipped},
+        )

@@ -48,6 +48,7 @@ _BLOCKS = {
     "do": "a loop: to read the lines in it, paste them alone",
     "switch": "a switch: its cases are not read",
 }
+_AROUND = frozenset({"namespace", "extern"})
 _WORDS = frozenset({"break", "continue", "goto", "case", "default", "typedef", "using", "namespace", "throw"})
 
 
@@ -65,6 +66,8 @@ def c_steps(text: str) -> Iterator[Step]:
             open_braces = max(0, open_braces - 1)
             if open_braces == 0:
                 yield End()
+        elif line.word(0) in _AROUND and statement.end == "{":
+            yield Leave(statement, f"{line.word(0)}: what stands in it is read")
         elif line.word(0) in _BLOCKS or (statement.end == "{" and statement.text):
             end = _block_end(statements, at)
             yield _left_block(statements[at : end + 1])
@@ -173,6 +176,8 @@ def _directive(line: Line) -> Iterator[Step]:
 def _function(line: Line) -> list[Step] | None:
     """`double f(double x, double Re)`: the header of a function without its brace, and the kinds of its parameters."""
     start = _type_words(line)
+    while start and line.tokens[start].kind == "name" and line.word(start + 1) == "::":
+        start += 2
     if not start or line.tokens[start].kind != "name" or line.word(start + 1) != "(":
         return None
     inside = line.tokens[start + 2 :]

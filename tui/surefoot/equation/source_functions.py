@@ -131,7 +131,7 @@ _FORTRAN: dict[str, KnownFunction] = {
     **dict.fromkeys(("log_gamma", "dlgama", "algama"), _LGAMMA),
     **dict.fromkeys(("dble", "dfloat"), _ASIDE),
     **dict.fromkeys(("float", "sngl"), _ROUND_TO_SINGLE),
-    **dict.fromkeys(("int", "ifix", "idint"), KnownFunction(dropped_fraction, 1, 2, ROUNDED_TO_WHOLE, Kind.WHOLE)),
+    **dict.fromkeys(("int", "ifix", "idint"), _WHOLE),
     **dict.fromkeys(("nint", "idnint"), _NEAREST),
     **dict.fromkeys(("aint", "dint"), _REAL_WHOLE),
     **dict.fromkeys(("anint", "dnint"), _REAL_NEAREST),
@@ -221,6 +221,9 @@ FUNCTIONS_OF: Mapping[Language, Mapping[str, KnownFunction]] = MappingProxyType(
 
 REFUSED = frozenset({"mod", "modulo", "amod", "dmod", "fmod", "fmodf", "remainder"})
 """Functions that give a remainder, which the equation language does not have."""
+
+WITH_KIND = frozenset({"real", "int", "nint", "aint", "anint", "floor", "ceiling"})
+"""Conversions of Fortran that take a kind as a second argument."""
 
 CONSTANTS_OF: Mapping[Language, Mapping[str, Expression]] = MappingProxyType(
     {

@@ -9,7 +9,7 @@ from dataclasses import dataclass, replace
 from functools import reduce
 
 from surefoot.equation.source_cursor import Cursor
-from surefoot.equation.source_functions import CONSTANTS_OF, FUNCTIONS_OF, MODULES, REFUSED, KnownFunction
+from surefoot.equation.source_functions import CONSTANTS_OF, FUNCTIONS_OF, MODULES, REFUSED, WITH_KIND, KnownFunction
 from surefoot.equation.source_parts import (
     IN_SINGLE,
     NotRead,
@@ -177,8 +177,8 @@ class OperandReader(Cursor, ABC):
         word = names[-1].lower() if self._language == "fortran" else names[-1]
         if word in REFUSED:
             fail(first, f"the remainder {names[-1]} is not part of the equation language", "write it out with floor")
-        if self._language == "fortran" and word in ("real", "cmplx"):
-            return self._fortran_real(first, opener)
+        if self._language == "fortran" and word in WITH_KIND:
+            return self._with_kind(first, opener, word)
         if word in ("merge", "where") and self._language != "c":
             return self._merged(first, opener, word)
         known = FUNCTIONS_OF[self._language].get(word)
@@ -237,8 +237,8 @@ class OperandReader(Cursor, ABC):
     def _written(self, first: SourceToken) -> str:
         return self._arithmetic.written(first, self._stop)
 
-    def _fortran_real(self, first: SourceToken, opener: SourceToken) -> Part:
-        """REAL(x) rounds to single precision, REAL(x, kind) only where the kind is."""
+    def _with_kind(self, first: SourceToken, opener: SourceToken, word: str) -> Part:
+        """A conversion of Fortran: REAL(x) rounds to single precision, REAL(x, kind) only where the kind is single."""
         value = self._value(ANY)
         kind = ""
         if self._takes(","):
@@ -247,12 +247,12 @@ class OperandReader(Cursor, ABC):
                 self._next()
             kind = "".join(token.text for token in self._tokens[start : self._at]).lower().removeprefix("kind=")
         self._expects(")", opener)
+        if word != "real":
+            return self._applied(first, FUNCTIONS_OF["fortran"][word], [value], word)
         to_single = not kind or is_single_kind(kind)
-        whole = value.kind is Kind.WHOLE
-        table = FUNCTIONS_OF["fortran"]
-        if to_single and whole:
+        if to_single and value.kind is Kind.WHOLE:
             return replace(value, kind=Kind.SINGLE, first=first, stop=self._stop, whole=None)
-        return self._applied(first, table["sngl" if to_single else "dble"], [value], "real")
+        return self._applied(first, FUNCTIONS_OF["fortran"]["sngl" if to_single else "dble"], [value], word)
 
     def _merged(self, first: SourceToken, opener: SourceToken, word: str) -> Part:
         """merge(value, other, condition) of Fortran, where(condition, value, other) of Python."""

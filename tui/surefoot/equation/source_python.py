@@ -30,7 +30,6 @@ _BLOCKS = {
     "except": "an except block",
     "finally": "a finally block",
     "with": "a with block",
-    "class": "a class",
     "match": "a match block",
     "async": "an async block",
 }
@@ -83,8 +82,9 @@ def _steps(line: Line) -> Iterator[Step]:
     if line.word(0) in _WITHOUT_EFFECT or first.kind == "end" or (first.kind == "string" and len(line.tokens) == 2):
         return
     if line.word(0) == "return":
-        if len(line.tokens) > 2:
-            yield Give(line.rest(1), returned=True)
+        yield from _returned(line)
+    elif line.word(0) == "class" and line.tokens[-2].is_symbol(":"):
+        yield Leave(statement, "a class: what stands in it is read")
     elif line.word(0) in _WORDS or first.is_symbol("@"):
         yield Leave(statement, f"{first.text} is not an assignment", assigned_names(line))
     elif (annotated := _annotated(line)) is not None:
@@ -124,6 +124,15 @@ def _annotated(line: Line) -> Step | None:
     if sign is None:
         return Leave(line.statement, "a declaration")
     return Assign(line.tokens[0], line.rest(sign + 1))
+
+
+def _returned(line: Line) -> Iterator[Step]:
+    """The first value that is returned; a derivative beside it is not read."""
+    parts = [(1 + a, 1 + b) for a, b in split_at(line.tokens[1:], ",")]
+    if parts:
+        yield Give(line.cut(*parts[0]), returned=True)
+    if len(parts) > 1:
+        yield Leave(line.statement, "of several values that are returned the first is read")
 
 
 def _unpacked(line: Line) -> tuple[Step, ...]:

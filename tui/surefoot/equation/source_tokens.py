@@ -204,7 +204,7 @@ def _python_number(text: str) -> SourceNumber | None:
 def rounded_to_single(value: float) -> float | None:
     """The nearest number of binary32; None beyond its range."""
     try:
-        return float(struct.unpack("f", struct.pack("f", value))[0])
+        return float(struct.unpack("<f", struct.pack("<f", value))[0])
     except OverflowError:
         return None
 
