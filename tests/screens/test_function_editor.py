@@ -230,7 +230,7 @@ def test_the_screen_is_whole_again_after_the_editor(tmp_path: Path) -> None:
         terminal.wait_for("return when done")
         terminal.press("enter")
         terminal.wait_for("Q = 2*Qd", "taken from the editor")
-        assert "EDITOR" not in terminal.text
+        terminal.wait_until(lambda seen: "EDITOR" not in seen.text, what="the editor's text to be gone")
         same = [at for at in range(24) if before[at] == terminal.lines[at]]
         assert {0, 1, 3, 4, 5, 7, 8, 9, 10, 11, 12} <= set(same)
         terminal.press("escape", "ctrl+q")
