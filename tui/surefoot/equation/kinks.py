@@ -172,10 +172,9 @@ def guard(pairs: Sequence[Pair]) -> Condition:
 def any_holds(conditions: Sequence[Condition]) -> Condition:
     """That one of the conditions holds, in short where they are the two sides of one place."""
     match conditions:
-        case [Comparison((a, b), relations), Comparison(others, (">" | "<",) as relation)] if others == (a, b) and {
-            relations,
-            relation,
-        } == {("<",), (">",)}:
+        case [Comparison((a, b)) as first, Comparison(operands) as last] if operands == (a, b) and _exclude(
+            first, last
+        ):
             return compared(a, "!=", b)
     return joined("or", conditions)
 

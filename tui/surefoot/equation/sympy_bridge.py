@@ -1,4 +1,4 @@
-"""Tree -> sympy, node by node, and back. Nothing is parsed by sympy, and what survives unchanged returns as written.
+"""Tree -> sympy, node by node: nothing is parsed by sympy. What survives unchanged is known again on the way back.
 
 Literals that every binary arithmetic holds exactly (2, 0.5) become rationals, which sympy multiplies out; any other
 literal, and every power or call without the unknown, stays a symbol under its own text, so that a derivative rounds
@@ -59,9 +59,7 @@ class Bridge:
         unknown: the symbol to differentiate by.
     """
 
-    def __init__(
-        self, unknown: str, slopes: Mapping[str, Expression], growing: Set[str], typed: Set[str] = frozenset()
-    ) -> None:
+    def __init__(self, unknown: str, slopes: Mapping[str, Expression], growing: Set[str], typed: Set[str]) -> None:
         """Sets out for one tree.
 
         Args:

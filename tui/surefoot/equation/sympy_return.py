@@ -26,15 +26,13 @@ def differentiated(tree: Expression, bridge: Bridge) -> Expression:
     from sympy.core.parameters import distribute
 
     with distribute(False):  # 2*(x + 1) stays a product
-        return to_tree(bridge.to_sympy(tree).diff(bridge.unknown), bridge)
-
-
-def to_tree(expression: Symbolic, bridge: Bridge) -> Expression:
-    """The tree of what sympy made of an expression that went there over `bridge`."""
-    return _Return(bridge).tree(expression)
+        slope = bridge.to_sympy(tree).diff(bridge.unknown)
+        return _Return(bridge).tree(slope)
 
 
 class _Return:
+    """Makes trees of what sympy made of an expression that went there over a bridge."""
+
     def __init__(self, bridge: Bridge) -> None:
         self._known, self._places = bridge.known, dict(bridge.place)
         self._unknown, self._slopes = bridge.unknown, bridge.slopes
