@@ -1,7 +1,7 @@
 """Beside scipy: every point that its bracketing solvers evaluate, to the bit, where ours can be set to its forms.
 
-scipy.optimize.brentq, ridder, toms748 and elementwise.find_root (Chandrupatla), on every published problem with a
-bracket and on the set of Alefeld, Potra and Shi. The functions are Python's own; scipy's stop is made from our states.
+scipy.optimize.brentq, brenth, ridder, toms748 and elementwise.find_root (Chandrupatla), on every published problem with
+a bracket and on the set of Alefeld, Potra and Shi. The functions are Python's own; scipy's stop is made from our states.
 """
 
 from __future__ import annotations
@@ -61,11 +61,16 @@ def evaluations_until(walk: Walk, stopped: Callable[[Any], bool], a_step: int = 
 
 @every_case
 @tolerances
-def test_brentq(code: str, index: int, xtol: float, rtol: float) -> None:
+@pytest.mark.parametrize(
+    ("solver", "form"), [(scipy.optimize.brentq, "differences"), (scipy.optimize.brenth, "hyperbolic")]
+)
+def test_brentq_and_brenth(
+    code: str, index: int, xtol: float, rtol: float, solver: Callable[..., Any], form: str
+) -> None:
     f, a, b = case(code, index)
     theirs = Recording(f)
-    root, info = scipy.optimize.brentq(theirs, a, b, xtol=xtol, rtol=rtol, full_output=True, maxiter=1000)
-    settings = {"interpolation": "differences", "tolerance": repr(xtol / 2), "relative_tolerance": repr(rtol / 2)}
+    root, info = solver(theirs, a, b, xtol=xtol, rtol=rtol, full_output=True, maxiter=1000)
+    settings = {"interpolation": form, "tolerance": repr(xtol / 2), "relative_tolerance": repr(rtol / 2)}
     walk = walked("brent-dekker", code, a, b, max(1, info.function_calls - 2), **settings)
     assert hexadecimal(walk.x) == hexadecimal(theirs.xs)
 

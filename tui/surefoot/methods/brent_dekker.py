@@ -17,7 +17,8 @@ the root, d = `state.step` the last step and e = `state.before` the one before i
                      and a := c
 This is setting interpolation = "ratios". With "differences", the form of a common library, p/q is
     -fb*(b - a)/(fb - fa), or with A = (fa - fb)/(a - b), C = (fc - fb)/(c - b): -fb*(fc*C - fa*A)/(C*A*(fc - fa)),
-interpolation asks |e| > delta and |fb| < |fa|, and d is taken where 2|d| < min(|e|, 3|m| - delta).
+interpolation asks |e| > delta and |fb| < |fa|, and d is taken where 2|d| < min(|e|, 3|m| - delta). "hyperbolic" differs
+from that in the step through three points alone, the zero of their hyperbola: -fb*(fc - fa)/(fc*A - fa*C).
 
 eps is the spacing of the numbers at 1. `tolerance` is t of the published algorithm: no step is shorter than delta, so
 that both ends close in. There it is part of the stopping test too, |m| <= delta or f(b) = 0; a run whose own test has
@@ -30,7 +31,8 @@ Needs: two starts with opposite signs of f, in either order. An end where f is e
 Costs: one value of f a step; order between 1.618 and 1.839 once it interpolates, halving in between.
 Breaks down when: the starts show no sign change; the width overflows. An interpolation that overflows is a halving.
 Good at: being the default. Bad at: f over many powers of ten, where steps of delta creep.
-Source: R. P. Brent, Algorithms for Minimization without Derivatives, 1973, chapter 4; T. J. Dekker 1969 (from memory).
+Source: R. P. Brent, Algorithms for Minimization without Derivatives, 1973, chapter 4; T. J. Dekker 1969; for the
+hyperbola J. C. P. Bus, T. J. Dekker, ACM TOMS 1 (1975) 330-345 (from memory).
 """
 
 from __future__ import annotations
@@ -109,8 +111,9 @@ class BrentDekker:
             key="interpolation",
             kind="choice",
             default="ratios",
-            meaning="how the step is computed and admitted: ratios of values of f as published, or divided differences",
-            choices=("ratios", "differences"),
+            meaning="how the step is computed and admitted: by ratios of values of f as published, by divided "
+            "differences, or by these with a hyperbola in the place of the inverse parabola",
+            choices=("ratios", "differences", "hyperbolic"),
         ),
     )
     state_type = BrentState
@@ -164,7 +167,8 @@ def _proposal(arithmetic: Arithmetic, state: BrentState, settings: Settings) -> 
     if step is None:
         x, account, memo = b + m, Account("bracket", ends, figures=width), (m.value, m.value)
     elif abs(step) > delta:
-        x, account, memo = b + step, _interpolation(arithmetic, state, width), (step.value, state.step)
+        x, memo = b + step, (step.value, state.step)
+        account = _interpolation(arithmetic, state, x, settings["interpolation"])
     else:
         x, memo = b + (delta if m > 0 else -delta), (step.value, state.step)
         account = Account("bracket", ends, figures=(*width, ("shortest_step", delta.value)))
@@ -185,7 +189,8 @@ def _interpolated(arithmetic: Arithmetic, state: BrentState, m: Guarded, delta: 
     try:
         if form == "ratios":
             return _by_ratios(arithmetic, state, m, delta) if e >= delta and shrinking else None
-        return _by_differences(arithmetic, state, m, delta) if e > delta and shrinking else None
+        hyperbolic = form == "hyperbolic"
+        return _by_differences(arithmetic, state, m, delta, hyperbolic) if e > delta and shrinking else None
     except OperationFailed:
         return None
 
@@ -205,20 +210,29 @@ def _by_ratios(arithmetic: Arithmetic, state: BrentState, m: Guarded, delta: Gua
     return p / q if admitted else None
 
 
-def _by_differences(arithmetic: Arithmetic, state: BrentState, m: Guarded, delta: Guarded) -> Guarded | None:
+def _by_differences(
+    arithmetic: Arithmetic, state: BrentState, m: Guarded, delta: Guarded, hyperbolic: bool
+) -> Guarded | None:
     a, b, c = guarded(arithmetic, (state.previous.x, state.b.x, state.a.x))
     fa, fb, fc = guarded(arithmetic, (state.previous.f, state.b.f, state.a.f))
     if state.previous.x == state.a.x:
         step = -fb * (b - a) / (fb - fa)
     else:
         across_a, across_c = (fa - fb) / (a - b), (fc - fb) / (c - b)
-        step = -fb * (fc * across_c - fa * across_a) / (across_c * across_a * (fc - fa))
+        if hyperbolic:
+            step = -fb * (fc - fa) / (fc * across_a - fa * across_c)
+        else:
+            step = -fb * (fc * across_c - fa * across_a) / (across_c * across_a * (fc - fa))
     admitted = 2 * abs(step) < abs(Guarded(arithmetic, state.before)) and 2 * abs(step) < 3 * abs(m) - delta
     return step if admitted else None
 
 
-def _interpolation(arithmetic: Arithmetic, state: BrentState, figures: tuple[tuple[str, Real], ...]) -> Account:
-    """The chord through b and c, or the parabola through a, b and c."""
+def _interpolation(arithmetic: Arithmetic, state: BrentState, x: Guarded, form: str) -> Account:
+    """The chord through b and c, or the curve through a, b and c."""
+    width = width_figure(arithmetic, state.a, state.b)
     if state.previous.x == state.a.x:
-        return Account("chord", (state.b, state.a), chord_slope(arithmetic, state.a, state.b), figures)
-    return Account("parabola", (state.previous, state.b, state.a), figures=figures)
+        return Account("chord", (state.b, state.a), chord_slope(arithmetic, state.a, state.b), width)
+    if form == "hyperbolic":  # a curve that the pictures do not have
+        points = (state.a, state.b, state.previous)
+        return Account("bracket", points, figures=(*width, ("zero_of_the_hyperbola", x.value)))
+    return Account("parabola", (state.previous, state.b, state.a), figures=width)
