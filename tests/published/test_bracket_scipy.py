@@ -1,7 +1,8 @@
 """Beside scipy: every point that its bracketing solvers evaluate, to the bit, where ours can be set to its forms.
 
 scipy.optimize.brentq, brenth, ridder, toms748 and elementwise.find_root (Chandrupatla), on every published problem with
-a bracket and on the set of Alefeld, Potra and Shi. The functions are Python's own; scipy's stop is made from our states.
+a bracket and on the set of Alefeld, Potra and Shi. The functions are Python's own; scipy's stop is made from states of
+ours.
 """
 
 from __future__ import annotations
