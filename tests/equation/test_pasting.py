@@ -378,3 +378,13 @@ def test_every_known_function_makes_text_that_is_accepted(language: str) -> None
             assert to_text(parse_expression(made)) == made, name
     for constant in CONSTANTS_OF[language].values():
         parse_expression(to_text(constant))
+
+
+def test_a_subroutine_gives_its_residual_by_a_parameter() -> None:
+    pasted = read_source(
+        "      SUBROUTINE FRIC(F, RES)\n      REAL*8 F, RES\n      EPSD = EPS/D\n"
+        "      RES = 1.D0/DSQRT(F)\n     1  + EPSD\n      END\n"
+    )
+    assert (pasted.unknown, pasted.equation) == ("F", "1./sqrt(F) + EPSD")
+    assert [(each.name, each.text) for each in pasted.definitions] == [("EPSD", "EPS/D")]
+    assert pasted.names_needed == ("EPS", "D")
