@@ -264,6 +264,7 @@ def test_chandrupatla_steps() -> None:
 def test_chandrupatla_keeps_clear_of_the_ends() -> None:
     (_, one), (second, _) = steps_of("chandrupatla", 2, tolerance="0.1")
     assert second.x == pytest.approx(1.4, rel=1e-12)
+    assert dict(account_of(second).figures)["clear_of_end"] == pytest.approx(0.1, rel=1e-12)
     assert one.third == B
 
 

@@ -102,17 +102,20 @@ class Chandrupatla:
 
     def propose(self, state: ThreePointState, settings: Settings, functions: Functions) -> Proposal | Breakdown:
         arithmetic = functions.arithmetic
+        ends = state.a, state.b
         x1, x2 = guarded(arithmetic, (state.a.x, state.b.x))
+        t, clear = _fraction(arithmetic, state, settings)
         try:
-            t = _fraction(arithmetic, state, settings)
             x = x1 + ((x2 - x1) / 2 if t is None else t * (x2 - x1))
+            figures = width_figure(arithmetic, *ends)
+            if clear is not None:
+                figures = (*figures, ("clear_of_end", (clear * abs(x2 - x1)).value))
         except OperationFailed:
-            return breakdown(arithmetic, "the step overflows", (state.a, state.b))
-        figures = width_figure(arithmetic, state.a, state.b)
-        account = Account("bracket", (state.a, state.b), figures=figures)
-        if t is not None and state.third is not None:
-            account = Account("parabola", (state.a, state.b, state.third), figures=figures)
-        return Proposal(held_between(state.a, state.b, x.value), account)
+            return breakdown(arithmetic, "the step overflows", ends)
+        account = Account("bracket", ends, figures=figures)
+        if t is not None and clear is None and state.third is not None:
+            account = Account("parabola", (*ends, state.third), figures=figures)
+        return Proposal(held_between(*ends, x.value), account)
 
     def accept(self, state: ThreePointState, proposal: Proposal, point: Point) -> ThreePointState:
         if not contains(state.a, state.b, point.x):
@@ -122,18 +125,22 @@ class Chandrupatla:
         return ThreePointState(point, state.a, state.b)
 
 
-def _fraction(arithmetic: Arithmetic, state: ThreePointState, settings: Settings) -> Guarded | None:
-    """t of an interpolation, None where the bracket is to be halved."""
+def _fraction(
+    arithmetic: Arithmetic, state: ThreePointState, settings: Settings
+) -> tuple[Guarded | None, Guarded | None]:
+    """t, and tl where t was held by it; no t where the bracket is to be halved."""
     if state.third is None:
-        return None
+        return None, None
     try:
         clear = _clearance(arithmetic, state, settings)
-        if 2 * clear > 1:  # the published algorithm ends here
-            return None
         t = _interpolated(arithmetic, state, state.third)
-        return None if t is None else clear if t < clear else 1 - clear if t > 1 - clear else t
     except OperationFailed:
-        return None
+        return None, None
+    if t is None or 2 * clear > 1:  # the published algorithm ends where 2 tl > 1
+        return None, None
+    if t < clear:
+        return clear, clear
+    return (1 - clear, clear) if t > 1 - clear else (t, None)
 
 
 def _clearance(arithmetic: Arithmetic, state: ThreePointState, settings: Settings) -> Guarded:
