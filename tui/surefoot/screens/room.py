@@ -13,7 +13,6 @@ from textual import events
 from textual.app import ComposeResult
 from textual.containers import Container
 from textual.screen import Screen
-from textual.widget import Widget
 from textual.widgets import Input, TextArea
 
 from surefoot.screens.commands import EVERYWHERE, FIELD, PLACES, ROOMS, Key, key_of
@@ -241,8 +240,3 @@ def _both(left: Text, right: Text, width: int) -> Text:
     if len(left) > room:
         left = left[:room]
     return Text.assemble(left, " " * max(width - len(left) - len(right), 1), right)
-
-
-def body_of(room: Room) -> Widget:
-    """The container between heading and foot."""
-    return room.query_one("#body")
