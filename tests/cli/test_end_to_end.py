@@ -14,7 +14,7 @@ import pytest
 
 from support.command import SUREFOOT, Home
 from support.problem_files import COLEBROOK, DIVERGING_SECANT, SECANT, published_root, write
-from support.terminal import Terminal
+from support.terminal import KEYS, Terminal
 from surefoot.cli.exits import Exit
 
 EQUATION = "1/sqrt(f) = -2*log10(eps/(3.7*D) + 2.51/(Re*sqrt(f)))"
@@ -127,6 +127,20 @@ def test_the_main_job(home: Home) -> None:
     assert json.loads(answer.stdout)["sessions"][0]["steps"] == 7
     names = [event["by"] for event in json.loads(session.read_bytes())["events"]]
     assert names == ["M. R., duty"] * 7 + ["K. L., relief"] * 4
+
+
+def test_keys_that_arrive_at_once_act_in_their_order(home: Home) -> None:
+    """A line that stalled delivers what was typed in one piece: what follows a tab belongs to the next field."""
+    with open_screens(home, "--by", "M. R., duty") as seen:
+        seen.wait_for("No sessions here yet")
+        tab, back = KEYS["tab"], KEYS["shift+tab"]
+        seen.send(f"n{KEYS['enter']}{EQUATION}{tab}{tab}{INPUTS}{back * 4}0.1{back}0.005{KEYS['ctrl+s']}")
+        seen.wait_for("[2 method]", "accepted")
+        choose, take = KEYS["up"] * 3 + KEYS["enter"], KEYS["enter"]
+        seen.send(f"{choose}{take}0.02{take}{KEYS['down']}{take}0.03{take}b   ")
+        seen.wait_for("[3 steps]", "3 steps, 5 evaluations")
+    [session] = (home.folder / "data" / "surefoot" / "sessions").glob("*.json")
+    assert iterates_on_disk(session) == secant(0.02, 0.03, 3)
 
 
 def test_a_problem_file_with_its_plan_opens_and_goes_to_the_stop(home: Home) -> None:

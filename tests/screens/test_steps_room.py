@@ -156,8 +156,7 @@ async def test_any_size_of_terminal_is_survived(tmp_path: Path, size: tuple[int,
     async with app.run_test(size=size) as pilot:
         await wait_until(pilot, lambda: app.session is not None)
         await pilot.press("space", "c", "z", "t", "t", "2", "4", "3", "space")
-        await pilot.pause()
-        assert run_of(app).steps == 2
+        await wait_until(pilot, lambda: run_of(app).steps == 2)
         assert app.fault is None
 
 

@@ -15,7 +15,6 @@ from collections.abc import Callable, Mapping
 from pathlib import Path
 from typing import ClassVar
 
-from textual.app import App
 from textual.binding import Binding, BindingType
 
 from surefoot.errors import Refused, SurefootError
@@ -24,6 +23,7 @@ from surefoot.methods.plan import Plan
 from surefoot.screens.commands import Key
 from surefoot.screens.dialogs import Ask
 from surefoot.screens.driver import AsciiDriver, environment_at_start, wants_ascii
+from surefoot.screens.key_order import KeysInOrder
 from surefoot.screens.leaving import leaving_line
 from surefoot.screens.looks import DEFAULT_LOOK, LOOKS, Kind
 from surefoot.screens.pictures import Sampler
@@ -34,7 +34,7 @@ from surefoot.session.session import Session
 from surefoot.session.state import StatedProblem
 
 
-class SurefootApp(App[int], inherit_bindings=False):
+class SurefootApp(KeysInOrder, inherit_bindings=False):
     """The terminal program.
 
     Args:
