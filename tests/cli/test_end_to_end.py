@@ -118,10 +118,10 @@ def test_the_main_job(home: Home) -> None:
         seen.wait_for("all 7 steps reproduced to the bit; chain whole, 11 events")
         seen.press("ctrl+q")
         assert seen.wait_end() == Exit.GOOD
-        left = seen.after_the_screens.replace("\r\n", "")
+        left = seen.after_the_screens
     root = plain[-1][0]
     assert root == pytest.approx(float(published_root("hyd-colebrook-lib").value), rel=4e-16)
-    assert f"surefoot: converged, f = {root:.17g}; {session}" in left
+    assert f"surefoot: converged, f = {root:.17g}; {session}\r\n" in left
     answer = home.run("recompute", str(session), "--json")
     assert answer.returncode == Exit.GOOD
     assert json.loads(answer.stdout)["sessions"][0]["steps"] == 7

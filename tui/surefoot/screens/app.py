@@ -69,6 +69,7 @@ class SurefootApp(KeysInOrder, inherit_bindings=False):
         self.session: Session | None = None
         self.rooms: dict[str, Room] = {}
         self.working = ""
+        self.left_with = ""  # what stays in the scrollback
         self.variant: tuple[int, int] | None = None
         self.plan_table: Mapping[str, object] | None = None  # [plan] and [arithmetic] of the problem file in hand
         self.arithmetic = "binary64"
@@ -108,7 +109,8 @@ class SurefootApp(KeysInOrder, inherit_bindings=False):
     def leave(self) -> None:
         """End the program. All that was done is on disk; half-typed text goes into the draft."""
         self._keep_drafts()
-        self.exit(0, message=leaving_line(self.session))
+        self.left_with = leaving_line(self.session)
+        self.exit(0)
 
     def action_leave(self) -> None:
         self.leave()
@@ -323,4 +325,7 @@ def run_app(
         _let_the_terminal_go()
     if app.fault is not None:
         raise app.fault
+    if app.left_with and sys.stderr is not None:
+        # Not through the toolkit, which would break the line at the width of the terminal.
+        sys.stderr.write(f"{app.left_with}\n")
     return result if result is not None else int(app.return_code or 0)

@@ -12,6 +12,10 @@ def leaving_line(session: Session | None) -> str:
     """Outcome, root (or the last iterate) at 17 digits, unit and file; empty when there was no session."""
     if session is None:
         return ""
+    return "".join(character if character.isprintable() else "?" for character in _line(session))
+
+
+def _line(session: Session) -> str:
     run = session.state.run
     if run is None:
         return f"surefoot: {title_words(session.state)}: no run yet; {session.path}"
