@@ -488,6 +488,16 @@ def test_settings_that_the_published_rule_does_not_allow(code: str, setting: str
     assert str(refused.value) == f"plan.settings.{setting}: {text} lies outside {interval}"
 
 
+@pytest.mark.parametrize(
+    "code", [code for code in BRACKETING if "tolerance" in {s.key for s in METHODS[code].settings}]
+)
+def test_a_tolerance_of_any_size(code: str) -> None:
+    """The widest that there is: halvings, or a breakdown with its figures."""
+    walk = walked(plan(code, "1", "2", tolerance="1.7e308"))
+    assert walk.outcome in ("no_progress", "step_limit", "broke_down")
+    assert all(1.0 <= x <= 2.0 for x in walk.x)
+
+
 @every_method
 @pytest.mark.parametrize("ends", [("-1.7e308", "1.7e308"), ("1.1e308", "1.7e308"), ("-5e-324", "5e-324")])
 def test_ends_of_the_numbers(code: str, ends: tuple[str, str]) -> None:

@@ -41,9 +41,6 @@ class Guarded:
     def __rmul__(self, other: int) -> Guarded:
         return Guarded(self.arithmetic, self.arithmetic.multiply(self.arithmetic.integer(other), self.value))
 
-    def __rtruediv__(self, other: int) -> Guarded:
-        return Guarded(self.arithmetic, self.arithmetic.divide(self.arithmetic.integer(other), self.value))
-
     def __neg__(self) -> Guarded:
         return Guarded(self.arithmetic, self.arithmetic.negate(self.value))
 

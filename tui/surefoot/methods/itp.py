@@ -6,7 +6,7 @@ never further from the middle than bisection can make good: it needs at most n0 
 Update rule, with a < b = `state.a`, `state.b`, m = (a + b)/2, w = b - a:
     x_f = (fb*a - fa*b)/(fb - fa)                                 interpolate: the zero of the chord
     t = x_f moved towards m by delta = kappa1*w^kappa2, but not beyond m                      truncate
-    x = t where |t - m| <= r, otherwise m moved towards t by r,  r = `state.reach` - w/2       project
+    x = t where |t - m| <= r, otherwise m moved towards x_f by r,  r = `state.reach` - w/2     project
     x replaces the end whose sign f has there; `state.reach` := reach/2
 At the start reach = epsilon*2^(n + n0), with n the least whole number for which epsilon*2^n >= w/2, the steps of
 bisection. The middle itself is taken where w <= 2*epsilon, where the published algorithm ends, and where r comes out
@@ -116,12 +116,13 @@ class Itp:
         a, b, reach, epsilon = guarded(arithmetic, (state.a.x, state.b.x, state.reach, state.epsilon))
         try:
             middle, radius = (a + b) / 2, reach - (b - a) / 2
+            rounding = _ROUNDING * Guarded(arithmetic, arithmetic.spacing(middle.value))
+            followed = (b - a) / 2 > epsilon and radius >= -rounding
         except OperationFailed:
             return breakdown(arithmetic, "the middle overflows", (state.a, state.b))
         figures = width_figure(arithmetic, state.a, state.b)
-        x, found = middle, None
-        if b - a > 2 * epsilon and radius >= -_ROUNDING * Guarded(arithmetic, arithmetic.spacing(middle.value)):
-            found = _truncated(arithmetic, state, middle, settings)
+        x = middle
+        found = _truncated(arithmetic, state, middle, settings) if followed else None
         if found is not None:
             truncated, zero, delta = found
             figures = (*figures, ("radius", radius.value), ("chord_zero", zero.value), ("truncation", delta.value))

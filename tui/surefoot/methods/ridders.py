@@ -113,10 +113,9 @@ class Ridders:
         x: Real = middle.x
         if middle.f != 0:
             try:
-                step = _step(arithmetic, points, half, settings)
+                x = held_between(a, b, (m + _step(arithmetic, points, half, settings)).value)
             except OperationFailed:
                 return breakdown(arithmetic, "fm^2 - fa*fb overflows, or underflows to zero", points)
-            x = held_between(a, b, (m + step).value)
         figures = (*width_figure(arithmetic, a, b), ("middle", middle.x))
         return Proposal(x, Account("bracket", points, figures=figures), _Middle(middle, offset))
 
