@@ -72,3 +72,4 @@ def test_the_program_learns_the_size(tmp_path: Path) -> None:
         seen.resize(120, 40)
         seen.press("enter")
         seen.wait_for("columns=120, lines=40")
+        assert len(seen.lines) == 40

@@ -217,6 +217,18 @@ def test_another_arithmetic_is_written_as_the_record_writes_it(home: Home, capsy
     assert {type(row["x"]) for row in answer["iterates"]} == {str}
 
 
+def test_a_range_may_be_wider_than_the_arithmetic(home: Home, capsys) -> None:
+    text = COLEBROOK.replace("[0.005, 0.1]", '["0x1p-9", 1e100]') + '[arithmetic]\nkind = "binary32"\n'
+    code, answer = run_object(capsys, write(home.folder, text + SECANT.replace("1e-12", "1e-6")), "--no-save")
+    assert (code, answer["in_range"]) == (Exit.GOOD, True)
+
+
+def test_a_title_cannot_steer_the_terminal(home: Home, capsys) -> None:
+    write(home.folder, COLEBROOK.replace('title = "', 'title = "\\u001b[31m\\n') + SECANT)
+    main(["run", "colebrook.toml", "--no-save"])
+    assert capsys.readouterr().out.startswith("\\x1b[31m\\nColebrook-White")
+
+
 def test_a_unit_follows_the_root(home: Home, capsys) -> None:
     text = 'unknown = "y"\nunit = "m"\nequation = "y^2 = 2"\nrange = [0, 2]\nformat = 1\n'
     plan = '[plan]\nmethod = "newton-raphson"\nstart = [1.5]\n[plan.stop]\nx_relative = 1e-15\n'

@@ -6,6 +6,7 @@ from dataclasses import dataclass
 
 from surefoot.cli.exits import Exit
 from surefoot.equation.arithmetic import Arithmetic
+from surefoot.equation.binary64 import BINARY64
 from surefoot.equation.checking import check_problem
 from surefoot.equation.choice import arithmetic_of
 from surefoot.equation.function import Function
@@ -45,10 +46,11 @@ def judge(run: Run) -> Judgement:
 
 
 def _in_range(problem: Problem, root: Real, arithmetic: Arithmetic) -> bool | None:
+    """Compared in binary64, in which every end of a range can be held whatever the arithmetic of the run."""
     if problem.range is None:
         return None
-    low, high = (arithmetic.literal(text, False) for text in problem.range)
-    return bool(low <= root <= high)
+    low, high = (BINARY64.literal(text, single=False) for text in problem.range)
+    return low <= arithmetic.approximate(root) <= high
 
 
 def _admissible(problem: Problem, root: Real, arithmetic: Arithmetic) -> bool | None:

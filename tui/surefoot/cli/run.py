@@ -38,9 +38,10 @@ def run(request: Request) -> int:
         with _session(request, problem) as session:
             with _naming(name):
                 done = _to_the_stop(session, problem, plan, watch)
+            judgement = judge(done)
             saved = None if request.flag("--no-save") else session.path
-            (say_run_object if request.flag("--json") else say_run)(done, judge(done), saved)
-    return judge(done).exit
+            (say_run_object if request.flag("--json") else say_run)(done, judgement, saved)
+    return judgement.exit
 
 
 def _read(name: str) -> tuple[Problem, Plan]:

@@ -2,10 +2,11 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from pathlib import Path
 
 from surefoot.cli import streams
-from surefoot.cli.iterates import digits, rows_of
+from surefoot.cli.iterates import Row, digits, rows_of
 from surefoot.cli.judgement import Judgement
 from surefoot.cli.output import aligned, json_number, say_object
 from surefoot.equation.arithmetic import Arithmetic
@@ -45,31 +46,30 @@ def say_run_object(run: Run, judgement: Judgement, saved: Path | None) -> None:
 
 def say_run(run: Run, judgement: Judgement, saved: Path | None) -> None:
     """Print the steps of a run, how it ended and what it cost."""
+    assert run.ending is not None, "only a run that has ended is printed"
     problem = run.stated.problem
-    arithmetic = rows_of(run)[0]
+    arithmetic, rows = rows_of(run)
     lines = [
         problem.title or problem.equation,
         f"{method_of(run.plan.method).traits.title}, {run.plan.arithmetic}",
         "",
-        *_table(run),
+        *_table(problem, arithmetic, rows),
         "",
-        _ending(run),
+        f"{run.ending.outcome}: {run.ending.says}",
     ]
     if judgement.root is not None:
         lines.append(f"{problem.unknown} = {with_unit(digits(judgement.root, arithmetic), problem.unit)}")
         lines += _standing(problem, judgement)
     lines.append(_cost(run))
     if saved is not None:
-        lines.append(f"session: {streams.one_line(str(saved))}")
-    streams.say("\n".join(lines) + "\n")
+        lines.append(f"session: {saved}")
+    streams.say("".join(f"{streams.one_line(line)}\n" for line in lines))
 
 
-def _table(run: Run) -> list[str]:
+def _table(problem: Problem, arithmetic: Arithmetic, rows: Sequence[Row]) -> list[str]:
     """One row an iterate; the column of limits only when a limit held."""
-    arithmetic, rows = rows_of(run)
-    problem = run.stated.problem
-    heads = ["k", with_unit(problem.unknown, f"[{problem.unit}]" if problem.unit else ""), "residual"]
-    heads += [f"d{problem.unknown}", "limits"]
+    unknown = problem.unknown
+    heads = ["k", with_unit(unknown, f"[{problem.unit}]" if problem.unit else ""), "residual", f"d{unknown}", "limits"]
     table = [heads]
     for row in rows:
         cells = [str(row.iterate.k), digits(row.iterate.x, arithmetic), _short(row.iterate.f, arithmetic)]
@@ -83,11 +83,6 @@ def _short(x: Real | Failure | None, arithmetic: Arithmetic) -> str:
     if isinstance(x, Failure):
         return "no value"
     return "" if x is None else short(arithmetic.encode(x), _SIX)
-
-
-def _ending(run: Run) -> str:
-    assert run.ending is not None, "only a run that has ended is printed"
-    return f"{run.ending.outcome}: {run.ending.says}"
 
 
 def _standing(problem: Problem, judgement: Judgement) -> list[str]:
@@ -105,6 +100,5 @@ def _standing(problem: Problem, judgement: Judgement) -> list[str]:
 def _cost(run: Run) -> str:
     spent = run.spent
     counts = [(spent.f, "of f"), (spent.derivative, "of the derivative"), (spent.g, "of g")]
-    return f"{run.steps} steps, evaluations: " + (
-        ", ".join(f"{count} {what}" for count, what in counts if count) or "none"
-    )
+    told = ", ".join(f"{count} {what}" for count, what in counts if count)
+    return f"{run.steps} step{'' if run.steps == 1 else 's'}, evaluations: {told or 'none'}"

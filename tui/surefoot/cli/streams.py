@@ -34,11 +34,6 @@ def say(text: str) -> None:
     _write(sys.stdout, text)
 
 
-def flush() -> None:
-    """Hand what was said to the system. Raises RequestError when it cannot be written."""
-    _write(sys.stdout, "")
-
-
 def complain(message: str) -> None:
     """Write one line to standard error; it is lost when there is no standard error to write to."""
     try:
