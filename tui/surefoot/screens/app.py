@@ -214,7 +214,10 @@ class SurefootApp(KeysInOrder, inherit_bindings=False):
         return self.session.refusal(BeginVariant if varied else key.needs)
 
     def perform(self, command: Command) -> bool:
-        """Do a command now. False, with the reason in the message line, when it was not done."""
+        """Do a command now. False, with the reason in the message line, when it was not done.
+
+        The room that asked draws itself: once a key, and once an answer (`Room.ask`).
+        """
         if self.session is None:
             self.tell("no problem yet; accept a function first", "alert")
             return False
@@ -223,11 +226,16 @@ class SurefootApp(KeysInOrder, inherit_bindings=False):
         except SurefootError as error:
             self.tell(str(error), "alert")
             return False
-        self.redraw_room()
         return True
 
-    def perform_long(self, what: str, work: Callable[[Callable[[], bool]], str], then: Callable[[], None]) -> None:
-        """Do work in a thread. `work` is given the question whether to stop, and returns a line to show."""
+    def perform_long(
+        self, what: str, work: Callable[[Callable[[], bool]], str], then: Callable[[], None] | None = None
+    ) -> None:
+        """Do work in a thread. `work` is given the question whether to stop, and returns a line to show.
+
+        Args:
+            then: called when the work has ended, before the room is drawn again.
+        """
         self.working = what
         self._stop.clear()
         self.tell(f"{what} ... any key stops it")
@@ -241,7 +249,8 @@ class SurefootApp(KeysInOrder, inherit_bindings=False):
 
         def ended(said: str, kind: Kind) -> None:
             self.working = ""
-            then()
+            if then is not None:
+                then()
             self.redraw_room()
             self.tell(said, kind)
 

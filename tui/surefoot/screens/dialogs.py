@@ -13,6 +13,7 @@ from textual.screen import ModalScreen
 from textual.widgets import Input
 
 from surefoot.screens.commands import FIELD, Key, keys_of
+from surefoot.screens.scrolling import first_in_sight
 from surefoot.screens.widgets.lines import Lines
 
 
@@ -78,7 +79,7 @@ class Choose(ModalScreen[int | None]):
 
     def _draw(self) -> None:
         room = max(self.app.size.height - 5, 1)
-        first = max(0, min(self.at - room // 2, len(self.options) - room))
+        first = first_in_sight(self.at, len(self.options), room)
         lines: list[Text | str] = [Text(self.question, "bold")]
         for index in range(first, min(first + room, len(self.options))):
             chosen = index == self.at

@@ -16,6 +16,7 @@ from surefoot.figures.characters import Characters
 from surefoot.screens.form import Form
 from surefoot.screens.form_reading import Reading
 from surefoot.screens.looks import Kind
+from surefoot.screens.scrolling import first_in_sight
 from surefoot.screens.typeset import broken, typeset
 from surefoot.session.state import StatedProblem
 
@@ -123,7 +124,7 @@ def marked(line: str, column: int, space: Space) -> list[str]:
     cut, room = "...", space.room
     first = 0
     if len(shown) > room:
-        first = max(0, min(column - 1 - room // 2, len(shown) - room))
+        first = first_in_sight(column - 1, len(shown), room)
         shown = shown[first : first + room]
         if first > 0:
             shown = cut + shown[len(cut) :]

@@ -22,6 +22,7 @@ from surefoot.screens.picking import Picking
 from surefoot.screens.pictures import start_picture, start_window
 from surefoot.screens.plan_form import PlanForm, form_of_plan, form_of_table
 from surefoot.screens.room import Room
+from surefoot.screens.scrolling import first_in_sight, moving_keys
 from surefoot.screens.widgets.lines import Lines
 from surefoot.session.commands import BeginRun, BeginVariant
 from surefoot.session.events import RunBegun
@@ -36,10 +37,7 @@ class MethodRoom(Room):
     place = "method"
     BINDINGS: ClassVar[list[BindingType]] = [
         *bindings_of("method"),
-        Binding("up", "move(-1)", show=False),
-        Binding("down", "move(1)", show=False),
-        Binding("pageup", "move(-8)", show=False),
-        Binding("pagedown", "move(8)", show=False),
+        *moving_keys(8),
         Binding("left", "slide(-1)", show=False),
         Binding("right", "slide(1)", show=False),
         Binding("shift+left", "slide(-10)", show=False),
@@ -120,7 +118,7 @@ class MethodRoom(Room):
         rows = _LIST_ROWS - 2
         codes = list(METHODS)
         here = self.at if self.in_methods else codes.index(self.form.method)
-        first = max(0, min(here - rows // 2, len(codes) - rows))
+        first = first_in_sight(here, len(codes), rows)
         lines = [head]
         for index in range(first, min(first + rows, len(codes))):
             traits = METHODS[codes[index]].traits
@@ -134,7 +132,7 @@ class MethodRoom(Room):
     def _plan_lines(self, width: int, height: int) -> list[Text]:
         rows = self.form.rows()
         at = -1 if self.in_methods else self.at
-        first = max(0, min(at - height // 2, len(rows) - height))
+        first = first_in_sight(at, len(rows), height)
         lines = []
         for index in range(first, min(first + max(height, 1), len(rows))):
             row = rows[index]
@@ -218,24 +216,16 @@ class MethodRoom(Room):
             return
         row = self.form.rows()[self.at]
 
-        def chosen(index: int | None) -> None:
-            if index is not None:
-                self._set(row.key, row.choices[index])
-
-        def typed(text: str | None) -> None:
-            if text is not None:
-                self._set(row.key, text)
-
         if row.choices:
             now = row.value or row.default
             at = row.choices.index(now) if now in row.choices else 0
-            self.app.push_screen(Choose(f"{row.key}: {row.meaning}", row.choices, at=at), chosen)
+            question = Choose(f"{row.key}: {row.meaning}", row.choices, at=at)
+            self.ask(question, lambda index: self._set(row.key, row.choices[index]))
         else:
-            self.app.push_screen(Ask(f"{row.key}: {row.meaning}", value=row.value), typed)
+            self.ask(Ask(f"{row.key}: {row.meaning}", value=row.value), lambda text: self._set(row.key, text))
 
     def _set(self, key: str, text: str) -> None:
         self.form = self.form.with_value(key, text)
-        self.redraw()
 
     def do_clear(self) -> None:
         if not self.in_methods:
@@ -262,7 +252,6 @@ class MethodRoom(Room):
         self.form = self.form.with_value(f"start {picked.number}", picked.text)
         more = picked.number < len(self._start_texts())
         self.picking = replace(picked, number=picked.number + 1) if more else None
-        self.redraw()
 
     def do_begin(self) -> None:
         try:

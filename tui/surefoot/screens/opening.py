@@ -8,11 +8,12 @@ from typing import ClassVar
 
 from rich.text import Text
 from textual.app import ComposeResult
-from textual.binding import Binding, BindingType
+from textual.binding import BindingType
 
 from surefoot.screens.commands import bindings_of
 from surefoot.screens.dialogs import Ask
 from surefoot.screens.room import Room
+from surefoot.screens.scrolling import first_in_sight, moving_keys
 from surefoot.screens.widgets.lines import Lines
 from surefoot.screens.words import OUTCOME_WORDS, clock
 from surefoot.session.library import Summary, find_sessions
@@ -26,10 +27,7 @@ class OpeningRoom(Room):
     place = "opening"
     BINDINGS: ClassVar[list[BindingType]] = [
         *bindings_of("opening"),
-        Binding("up", "move(-1)", show=False),
-        Binding("down", "move(1)", show=False),
-        Binding("pageup", "move(-10)", show=False),
-        Binding("pagedown", "move(10)", show=False),
+        *moving_keys(10),
     ]
 
     def __init__(self) -> None:
@@ -101,19 +99,14 @@ class OpeningRoom(Room):
         self.surefoot.go("function")
 
     def do_open(self) -> None:
-        self.app.push_screen(Ask("File to open (.json session, .toml problem):", check=file_fault), self._chosen)
-
-    def _chosen(self, answer: str | None) -> None:
-        if answer:
-            self.surefoot.open_file(Path(answer.strip()).expanduser())
+        question = Ask("File to open (.json session, .toml problem):", check=file_fault)
+        self.ask(question, lambda answer: self.surefoot.open_file(Path(answer.strip()).expanduser()))
 
     def do_filter(self) -> None:
-        def wanted(answer: str | None) -> None:
-            if answer is not None:
-                self.wanted = answer.strip()
-                self.redraw()
+        def wanted(answer: str) -> None:
+            self.wanted = answer.strip()
 
-        self.app.push_screen(Ask("Show sessions with (empty shows all):", value=self.wanted), wanted)
+        self.ask(Ask("Show sessions with (empty shows all):", value=self.wanted), wanted)
 
 
 def file_fault(answer: str) -> str:
@@ -131,7 +124,7 @@ def session_lines(summaries: Sequence[Summary], at: int, width: int, height: int
     room = max(width - _FIXED - 4, 8)
     lines = [("   " + "title".ljust(room) + " " + "".join(name.ljust(size) for size, name in _COLUMNS), False)]
     rows = max(height - 1, 1)
-    first = max(0, min(at - rows // 2, len(summaries) - rows))
+    first = first_in_sight(at, len(summaries), rows)
     for index in range(first, min(first + rows, len(summaries))):
         summary = summaries[index]
         mark = " > " if index == at else "   "

@@ -73,4 +73,4 @@ class RecordRoom(Room):
         def work(stop: Callable[[], bool]) -> str:
             return recomputed_words(recompute(path, stop=stop))
 
-        self.surefoot.perform_long("recomputing", work, lambda: None)
+        self.surefoot.perform_long("recomputing", work)

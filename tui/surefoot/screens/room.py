@@ -5,14 +5,15 @@ Rooms are thin. They read the session's frozen state, draw it, and send commands
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from textwrap import wrap
-from typing import TYPE_CHECKING, Any, ClassVar, cast
+from typing import TYPE_CHECKING, Any, ClassVar, TypeVar, cast
 
 from rich.text import Text
 from textual import events
 from textual.app import ComposeResult
 from textual.containers import Container
-from textual.screen import Screen
+from textual.screen import ModalScreen, Screen
 from textual.widgets import Input, TextArea
 
 from surefoot.screens.commands import EVERYWHERE, FIELD, PLACES, ROOMS, Key, key_of
@@ -24,6 +25,9 @@ from surefoot.session.commands import AddNote, Withdraw
 if TYPE_CHECKING:
     from surefoot.screens.app import SurefootApp
     from surefoot.session.state import SessionState
+
+
+Answer = TypeVar("Answer")
 
 
 class Room(Screen[None]):
@@ -89,8 +93,8 @@ class Room(Screen[None]):
         """Draw everything again; only changed cells are sent."""
         if not self.composed or self.size.width == 0:
             return
+        self.draw()  # first: a body that follows the session settles what the heading says
         self.query_one("#heading", Lines).show(self._heading())
-        self.draw()
         self.redraw_foot()
 
     def redraw_foot(self) -> None:
@@ -178,6 +182,17 @@ class Room(Screen[None]):
             event.prevent_default()
             self.surefoot.stop_work()
 
+    def ask(self, page: ModalScreen[Answer | None], then: Callable[[Answer], None]) -> None:
+        """Show a small question; `then` gets the answer, unless the person left it. The room is drawn again."""
+
+        def answered(answer: Answer | None) -> None:
+            if answer is not None:
+                then(answer)
+                if self.is_current:
+                    self.redraw()
+
+        self.app.push_screen(page, answered)
+
     def action_press(self, action: str) -> None:
         """The gate: a key whose command is not allowed now says why; any other is done."""
         if self.surefoot.working:
@@ -223,11 +238,11 @@ class Room(Screen[None]):
             self.say(f"withdrawn: {undone}")
 
     def do_note(self) -> None:
-        def noted(text: str | None) -> None:
-            if text and self.surefoot.perform(AddNote(text)):
+        def noted(text: str) -> None:
+            if self.surefoot.perform(AddNote(text)):
                 self.say("noted")
 
-        self.app.push_screen(Ask("Note for the record:", check=_required), noted)
+        self.ask(Ask("Note for the record:", check=_required), noted)
 
 
 def _required(answer: str) -> str:

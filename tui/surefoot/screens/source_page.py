@@ -13,6 +13,7 @@ from textual.screen import ModalScreen
 from surefoot.equation.pasting import LANGUAGES, Pasted, read_source
 from surefoot.errors import EquationError
 from surefoot.screens.form_lines import shown_text
+from surefoot.screens.scrolling import moving_keys
 from surefoot.screens.source import pasted_lines
 from surefoot.screens.widgets.field import MAX_PASTE, ManyLines
 from surefoot.screens.widgets.lines import Lines
@@ -41,10 +42,7 @@ class SourcePage(ModalScreen[Pasted | None]):
         Binding("escape", "back", show=False),
         Binding("enter", "take", show=False),
         Binding("l", "language", show=False),
-        Binding("up", "move(-1)", show=False),
-        Binding("down", "move(1)", show=False),
-        Binding("pageup", "move(-15)", show=False),
-        Binding("pagedown", "move(15)", show=False),
+        *moving_keys(15),
     ]
 
     def __init__(self, text: str) -> None:

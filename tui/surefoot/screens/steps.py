@@ -160,11 +160,10 @@ class StepsRoom(Room):
         self._many(None, "going on to the stop")
 
     def do_several(self) -> None:
-        def counted(answer: str | None) -> None:
-            if answer is not None:
-                self._many(int(answer), f"taking {int(answer)} steps")
+        def counted(answer: str) -> None:
+            self._many(int(answer), f"taking {int(answer)} steps")
 
-        self.app.push_screen(Ask("How many steps?", value="10", check=_count_fault), counted)
+        self.ask(Ask("How many steps?", value="10", check=_count_fault), counted)
 
     def _stepping(self) -> None:
         self.behind, self.landings = 0, None
@@ -179,7 +178,7 @@ class StepsRoom(Room):
             session.do(TakeSteps(count), stop=stop, on_step=lambda _: self.app.call_from_thread(self.redraw))
             return "stopped; what was computed is on disk" if stop() else ""
 
-        self.surefoot.perform_long(what, work, self.redraw)
+        self.surefoot.perform_long(what, work)
 
     def do_trial(self) -> None:
         run, session = self.run, self.surefoot.session
@@ -210,18 +209,16 @@ class StepsRoom(Room):
         self.zoomed = not self.zoomed
 
     def do_put(self) -> None:
-        def reasoned(x: str, reason: str | None) -> None:
-            if reason is not None:
-                self._stepping()
-                self.surefoot.perform(PutIterate(x, reason))
+        def reasoned(x: str, reason: str) -> None:
+            self._stepping()
+            self.surefoot.perform(PutIterate(x, reason))
 
-        def typed(x: str | None) -> None:
-            if x is not None:
-                ask = Ask("Reason (it goes into the record):", check=_reason_fault)
-                self.app.push_screen(ask, lambda reason: reasoned(x.strip(), reason))
+        def typed(x: str) -> None:
+            why = Ask("Reason (it goes into the record):", check=_reason_fault)
+            self.ask(why, lambda reason: reasoned(x.strip(), reason))
 
         name = self.run.stated.problem.unknown if self.run is not None else "x"
-        self.app.push_screen(Ask(f"Go on from {name} ="), typed)
+        self.ask(Ask(f"Go on from {name} ="), typed)
 
     def do_variant(self) -> None:
         run = self.run
@@ -239,20 +236,19 @@ class StepsRoom(Room):
             return
         options = [f"run {run.number}: {run.plan.method}, {ending_words(run)}, {run.steps} steps" for run in state.runs]
 
-        def chosen(index: int | None) -> None:
-            if index is not None and state.runs[index].number != state.hand:
+        def chosen(index: int) -> None:
+            if state.runs[index].number != state.hand:
                 self._stepping()
                 self.surefoot.perform(TakeUp(state.runs[index].number))
 
         at = next((index for index, run in enumerate(state.runs) if run.number == state.hand), 0)
-        self.app.push_screen(Choose("Take up", options, at=at), chosen)
+        self.ask(Choose("Take up", options, at=at), chosen)
 
     def do_abandon(self) -> None:
-        def reasoned(reason: str | None) -> None:
-            if reason is not None:
-                self.surefoot.perform(Abandon(reason))
+        def reasoned(reason: str) -> None:
+            self.surefoot.perform(Abandon(reason))
 
-        self.app.push_screen(Ask("Why is this run abandoned?", check=_reason_fault), reasoned)
+        self.ask(Ask("Why is this run abandoned?", check=_reason_fault), reasoned)
 
 
 def _start_words(text: str) -> str:
